@@ -1,0 +1,1 @@
+"""The physics: mesh, operators, row kernels, edges, sources, receivers, marching order."""

@@ -1,0 +1,72 @@
+"""Absorbing layers: convolutional perfectly matched layers with frequency shift and stretch.
+
+Along one axis, with u the depth into the layer over its thickness (0 at the section's bound):
+
+    d(u) = d0 u^2,  d0 = -3 c ln(R) / (2 L),   alpha(u) = alpha0 (1 - u),   kappa(u) = 1 + (kappa0 - 1) u^2
+    b = exp(-(d/kappa + alpha) dt),   a = d (b - 1) / (kappa (d + kappa alpha)),   g = 1/kappa - 1
+
+(Collino & Tsogka 2001, Geophysics 66, 294, for d0; Roden & Gedney 2000; Komatitsch & Martin 2007).
+"""
+
+import numpy as np
+
+from groundroll.waves.state import Layers, Sides
+
+CELLS = 20
+REFLECTION = 1e-4
+STRETCH = 1.0
+ORDER = 2
+
+
+def recursion(u, thickness, speed, shift, dt):
+    """Return (b, a, g) at relative depths `u` into a layer of `thickness` m; zero damping for u <= 0.
+
+    `speed` (m/s) scales the damping, `shift` (1/s) is alpha0.
+    """
+    u = np.clip(u, 0.0, None)
+    d = -(ORDER + 1) * speed * np.log(REFLECTION) / (2.0 * thickness) * u**ORDER
+    alpha = shift * np.clip(1.0 - u, 0.0, 1.0)
+    kappa = 1.0 + (STRETCH - 1.0) * u**ORDER
+    b = np.exp(-(d / kappa + alpha) * dt)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        a = np.where(d > 0.0, d * (b - 1.0) / (kappa * (d + kappa * alpha)), 0.0)
+    return b, a, 1.0 / kappa - 1.0
+
+
+def _axis(n, near, far):
+    """Return relative depths (2, n) into the near or far layer at node and half points."""
+    position = np.stack([np.arange(n), np.arange(n) + 0.5])
+    inward_near = (near - position) / near if near else np.full((2, n), -1.0)
+    inward_far = (position - (n - 1 - far)) / far if far else np.full((2, n), -1.0)
+    return np.maximum(inward_near, inward_far)
+
+
+def sides(mesh, speed, shift, dt, dtype) -> Sides | None:
+    """Set up the absorbing columns of `mesh`, or return None if neither side absorbs."""
+    left, right = mesh.absorbing[0], mesh.absorbing[1]
+    if not left and not right:
+        return None
+    # One column more on each side: the half point beyond a node of the bound lies in the layer.
+    left_end, right_start = left, mesh.nx - right - (1 if right else 0)
+    u = _axis(mesh.nx, left, right)
+    window = np.r_[0:left_end, right_start : mesh.nx]
+    thickness = mesh.spacing * max(left, right)
+    b, a, g = (v[:, window].astype(dtype) for v in recursion(u, thickness, speed, shift, dt))
+    psi = np.zeros((4, mesh.nz, len(window)), dtype=dtype)
+    return Sides(np.uint64(left_end), np.uint64(right_start), psi, b, a, g)
+
+
+def layers(mesh, speed, shift, dt, dtype) -> Layers | None:
+    """Set up the absorbing rows of `mesh`, or return None if neither top nor bottom absorbs."""
+    top, bottom = mesh.absorbing[2], mesh.absorbing[3]
+    if not top and not bottom:
+        return None
+    u = _axis(mesh.nz, top, bottom)
+    rows = np.flatnonzero((u > 0).any(axis=0))
+    index = np.full(mesh.nz, -1, dtype=np.int64)
+    index[rows] = np.arange(len(rows))
+    stretch = mesh.stretch_node[-1] if bottom else mesh.stretch_node[0]
+    thickness = mesh.spacing * stretch * max(top, bottom)
+    b, a, g = (v[:, rows].astype(dtype) for v in recursion(u, thickness, speed, shift, dt))
+    psi = np.zeros((4, len(rows), mesh.pitch), dtype=dtype)
+    return Layers(index, psi, b, a, g)

@@ -1,0 +1,88 @@
+"""The time loop's engine: fields, and passes of several steps over them in plain or fast order."""
+
+from concurrent.futures import ThreadPoolExecutor
+from dataclasses import dataclass
+
+import numpy as np
+
+from groundroll.waves.cell import REACH
+from groundroll.waves.marching import plain_pass, strip_pass
+from groundroll.waves.points import Receivers, Sources
+from groundroll.waves.state import Fields, Ground
+
+SCRATCH_ROWS = 4
+
+
+@dataclass(frozen=True)
+class Order:
+    """How a pass visits the mesh: `steps` per pass, `strip` columns wide; None for the plain order."""
+
+    steps: int = 8
+    strip: int | None = 768
+
+
+PLAIN = Order(steps=1, strip=None)
+
+
+def strip_blocks(width: int, strip: int, blocks: int, stages: int):
+    """Return (bounds, slopes) of each block of strips, and of the wedges between the blocks.
+
+    A block's outer bounds stand still at the ends of the mesh and shrink REACH columns per stage where
+    it meets another block; bounds inside move left. A block is at least wide enough to shrink.
+    """
+    least = 2 * REACH * stages + 1
+    blocks = max(1, min(blocks, width // least))
+    cuts = np.linspace(0, width, blocks + 1).astype(np.int64)
+    result = []
+    for low, high in zip(cuts[:-1], cuts[1:], strict=True):
+        count = max(1, min(round((high - low) / strip), (high - low) // least))
+        bounds = np.linspace(low, high, count + 1).astype(np.int64)
+        slopes = np.full(count + 1, -REACH)
+        slopes[0] = REACH if low > 0 else 0
+        slopes[-1] = -REACH if high < width else 0
+        result.append((bounds, slopes))
+    wedges = [(np.array([cut, cut]), np.array([-REACH, REACH])) for cut in cuts[1:-1]]
+    return result, wedges
+
+
+class March:
+    """Advances fields over a mesh; every pass ends with all cells at the same step."""
+
+    def __init__(self, mesh, ground: Ground, fields: Fields, sources: Sources, receivers: Receivers, order: Order, threads: int):
+        self.mesh, self.ground, self.fields = mesh, ground, fields
+        self.sources, self.receivers = sources, receivers
+        self.order, self.step = order, 0
+        self._scratch = [self._new_scratch() for _ in range(threads)]
+        self._pool = ThreadPoolExecutor(threads) if threads > 1 and order.strip is not None else None
+
+    def _new_scratch(self):
+        return np.zeros((SCRATCH_ROWS, self.mesh.pitch), dtype=self.fields.vx.dtype)
+
+    def advance(self, steps: int) -> None:
+        """Advance `steps` steps in one pass; receivers' traces of the pass begin at row 0."""
+        self.receivers.trace[:steps] = 0.0
+        if self.order.strip is None:
+            plain_pass(self.step, steps, self.mesh.nx, self.mesh.bands, *self._data(0))
+        else:
+            blocks, wedges = strip_blocks(self.mesh.nx, self.order.strip, len(self._scratch), 2 * steps)
+            for group in (blocks, wedges):
+                self._side_by_side(group, steps)
+        self.step += steps
+
+    def _data(self, worker: int):
+        return self.ground, self.fields, self.sources, self.receivers, self._scratch[worker]
+
+    def _side_by_side(self, group, steps: int) -> None:
+        def work(worker):
+            bounds, slopes = group[worker]
+            strip_pass(bounds, slopes, self.step, steps, self.mesh.bands, *self._data(worker))
+
+        if self._pool is None or len(group) < 2:
+            for worker in range(len(group)):
+                work(worker)
+        else:
+            list(self._pool.map(work, range(len(group))))
+
+    def close(self) -> None:
+        if self._pool is not None:
+            self._pool.shutdown()

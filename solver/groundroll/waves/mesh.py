@@ -1,0 +1,117 @@
+"""The mesh: where each row and column lies, and which of them belong to absorbing layers."""
+
+from dataclasses import dataclass, replace
+from functools import cached_property
+
+import numpy as np
+
+from groundroll.waves.cell import BAND, MARGIN_COLUMNS, MARGIN_ROWS
+from groundroll.waves.operators import Line, line
+
+SIDES = ("left", "right", "top", "bottom")
+
+
+@dataclass(frozen=True)
+class Mesh:
+    """A mesh of `nz` rows and `nx` columns, absorbing layers included.
+
+    `spacing` h (m) is the width of a column and of a row index; row k lies at depth `depth_node[k]`
+    (m), its half row at `depth_half[k]`; `stretch_node`, `stretch_half` are J = dz/d(k h) there.
+    Column i lies at x = `x0` + i h. `absorbing` counts the cells of the absorbing layer on each side
+    (left, right, top, bottom), 0 where the edge is "free" or "rigid" (`edges`, same order).
+    """
+
+    spacing: float
+    nx: int
+    nz: int
+    x0: float
+    edges: tuple[str, str, str, str]
+    absorbing: tuple[int, int, int, int]
+    depth_node: np.ndarray
+    depth_half: np.ndarray
+    stretch_node: np.ndarray
+    stretch_half: np.ndarray
+
+    @property
+    def pitch(self) -> int:
+        """Columns of the padded arrays: whole cache lines, an odd number of them.
+
+        A pitch that is a multiple of 4 kB would map every row onto the same sets of the first cache.
+        """
+        lines = -(-(self.nx + 2 * MARGIN_COLUMNS) // 16)
+        return 16 * (lines + 1 - lines % 2)
+
+    @property
+    def padded_rows(self) -> int:
+        return self.nz + 2 * MARGIN_ROWS
+
+    @property
+    def bands(self) -> int:
+        return -(-self.nz // BAND)
+
+    @property
+    def cells(self) -> int:
+        return self.nx * self.nz
+
+    @property
+    def x_node(self) -> np.ndarray:
+        return self.x0 + self.spacing * np.arange(self.nx)
+
+    @property
+    def x_half(self) -> np.ndarray:
+        return self.x_node + 0.5 * self.spacing
+
+    @cached_property
+    def columns(self) -> Line:
+        """Operators along x."""
+        return line(self.nx, self.edges[0], self.edges[1])
+
+    @cached_property
+    def rows(self) -> Line:
+        """Operators along z, before division by the stretch J."""
+        return line(self.nz, self.edges[2], self.edges[3])
+
+    @property
+    def section_columns(self) -> slice:
+        return slice(self.absorbing[0], self.nx - self.absorbing[1])
+
+    @property
+    def section_rows(self) -> slice:
+        return slice(self.absorbing[2], self.nz - self.absorbing[3])
+
+
+def even_mesh(spacing, length, depth, edges, layer) -> Mesh:
+    """Mesh of even spacing over a section, with absorbing layers of `layer` cells laid outside it.
+
+    `edges` = (left, right, top, bottom), each "absorb", "free" or "rigid". A closed edge lies on the
+    node nearest to the section's bound.
+    """
+    absorbing = tuple(layer if edge == "absorb" else 0 for edge in edges)
+    nx = round(length / spacing) + 1 + absorbing[0] + absorbing[1]
+    nz = round(depth / spacing) + 1 + absorbing[2] + absorbing[3]
+    k = np.arange(nz) - absorbing[2]
+    return Mesh(
+        spacing=spacing,
+        nx=nx,
+        nz=nz,
+        x0=-absorbing[0] * spacing,
+        edges=tuple(edges),
+        absorbing=absorbing,
+        depth_node=spacing * k,
+        depth_half=spacing * (k + 0.5),
+        stretch_node=np.ones(nz),
+        stretch_half=np.ones(nz),
+    )
+
+
+def with_depths(mesh: Mesh, depth_of, stretch_of) -> Mesh:
+    """Return `mesh` with rows at z = depth_of(k h), J = stretch_of(k h)."""
+    zeta = mesh.spacing * (np.arange(mesh.nz) - mesh.absorbing[2])
+    half = zeta + 0.5 * mesh.spacing
+    return replace(
+        mesh,
+        depth_node=depth_of(zeta),
+        depth_half=depth_of(half),
+        stretch_node=stretch_of(zeta),
+        stretch_half=stretch_of(half),
+    )

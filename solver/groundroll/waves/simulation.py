@@ -1,0 +1,143 @@
+"""One computation: mesh, ground, sources and receivers put together and stepped; no files.
+
+Records are raw (velocity at half steps of the scheme) until `velocity` frees them of time dispersion.
+"""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+
+from groundroll.waves import dispersion
+from groundroll.waves.assembly import EdgeDamping, Properties, assemble
+from groundroll.waves.march import March, Order
+from groundroll.waves.mesh import Mesh
+from groundroll.waves.placement import SIX, Entries, add_force, add_moment, injection, receivers
+from groundroll.waves.points import Sources
+from groundroll.waves.state import new_fields
+
+# Records are computed this many periods of the highest frequency beyond their end, and tapered there.
+RUN_OUT = 4.0
+# The pulse's spectrum counts as ended where it stays below this part of its peak.
+SPECTRUM_END = 1e-6
+
+
+@dataclass(frozen=True)
+class PointSource:
+    """A point source at (x, depth) m: `force` (Fx, Fz) N/m or `moment` (Mxx, Mzz, Mxz) N, times pulse(t)."""
+
+    x: float
+    depth: float
+    pulse: Callable
+    force: tuple[float, float] | None = None
+    moment: tuple[float, float, float] | None = None
+
+
+@dataclass(frozen=True)
+class Clock:
+    """Time step (s), steps of the whole run, duration of the records and highest frequency kept (Hz)."""
+
+    dt: float
+    steps: int
+    duration: float
+    top: float
+
+
+def clock(duration: float, dt: float, highest_frequency: float, pulses) -> Clock:
+    """Return the clock of a run whose records last `duration` s.
+
+    The scheme's own time runs behind at frequency f by about (2 pi f dt)^2 / 24 of the time passed and its
+    group delay by three times that, so the run goes on until the slowest component kept has come in.
+    """
+    top = min(max([highest_frequency, *(spectrum_end(p, duration, dt) for p in pulses)]), 0.25 / dt)
+    late = duration * (2.0 * np.pi * highest_frequency * dt) ** 2 / 8.0
+    steps = int(np.ceil((duration + late + RUN_OUT / highest_frequency) / dt)) + 1
+    return Clock(dt, steps, duration, top)
+
+
+def spectrum_end(pulse, duration: float, dt: float) -> float:
+    """Return the frequency (Hz) above which the pulse's amplitude spectrum stays below SPECTRUM_END of its peak."""
+    samples = pulse(dt * np.arange(int(duration / dt) + 1))
+    amplitude = np.abs(np.fft.rfft(samples, 4 * len(samples)))
+    loud = np.flatnonzero(amplitude > SPECTRUM_END * amplitude.max())
+    return loud[-1] / (4 * len(samples) * dt) if len(loud) else 0.0
+
+
+class Simulation:
+    """Steps the momentum equation on `mesh`; `traces` (step, receiver, 2) holds raw vx, vz at (n + 1/2) dt."""
+
+    def __init__(
+        self,
+        mesh: Mesh,
+        properties: Properties,
+        damping: EdgeDamping,
+        time: Clock,
+        sources: list[PointSource],
+        points: list[tuple[float, float]],
+        dtype=np.float32,
+        order: Order = Order(),
+        threads: int = 1,
+    ):
+        self.mesh, self.clock, self.properties = mesh, time, properties
+        self.longest_pass = max(order.steps, 1)
+        ground = assemble(mesh, properties, time.dt, damping, dtype)
+        self.march = March(
+            mesh,
+            ground,
+            new_fields(mesh, dtype),
+            inject(mesh, properties, sources, time, dtype),
+            receivers(mesh, points, self.longest_pass),
+            order,
+            threads,
+        )
+        self.traces = np.zeros((time.steps, len(points), 2))
+
+    @property
+    def step(self) -> int:
+        return self.march.step
+
+    def advance(self, steps: int) -> None:
+        """Advance up to `steps` steps, pass by pass, and keep what the receivers read."""
+        end = min(self.step + steps, self.clock.steps)
+        while self.step < end:
+            n = min(self.longest_pass, end - self.step)
+            start = self.step
+            self.march.advance(n)
+            by_column = self.march.receivers.trace[:n].reshape(n, self.traces.shape[1], 2, SIX)
+            self.traces[start : start + n] = by_column.sum(axis=3)
+
+    def velocity(self, times: np.ndarray) -> np.ndarray:
+        """Return velocity (receiver, 2, time) at `times` (s), freed of time dispersion, of the steps done so far.
+
+        Past the last step the record is zero; the last RUN_OUT periods before it are faded out.
+        """
+        done = self.traces[: max(self.step, 2)].transpose(1, 2, 0).reshape(-1, max(self.step, 2))
+        if not len(done):
+            return np.zeros((0, 2, len(times)))
+        samples = done * self._fade(done.shape[1])
+        clean = dispersion.correct(samples, self.clock.dt, times, self.clock.top, start=0.5 * self.clock.dt)
+        return clean.reshape(-1, 2, len(times))
+
+    def _fade(self, n: int) -> np.ndarray:
+        length = min(n, int(0.5 * RUN_OUT / self.clock.top / self.clock.dt))
+        fade = np.ones(n)
+        if length:
+            fade[-length:] = 0.5 + 0.5 * np.cos(np.pi * (np.arange(length) + 0.5) / length)
+        return fade
+
+
+def inject(mesh, properties, sources, time: Clock, dtype) -> Sources:
+    """Place all sources and predistort their pulses for the scheme's time dispersion."""
+    forces, moments = Entries(), Entries()
+    series = np.zeros((len(sources), time.steps + 1))
+    fine = time.dt * np.arange(time.steps + 1)
+    for number, source in enumerate(sources):
+        if source.force is not None:
+            add_force(mesh, properties, forces, moments, source.x, source.depth, source.force, number, time.dt)
+        if source.moment is not None:
+            add_moment(mesh, properties, moments, source.x, source.depth, source.moment, number)
+        series[number] = dispersion.predistort(source.pulse(fine), fine, time.dt, time.steps + 1)
+    return Sources(
+        injection(mesh, forces, series[:, :-1], dtype),
+        injection(mesh, moments, np.diff(series, axis=1), dtype),
+    )
