@@ -1,0 +1,1 @@
+"""What a trace means: peaks, derivatives, misfits. Knows neither the mesh nor files."""
