@@ -41,32 +41,28 @@ def _axis(n, near, far):
     return np.maximum(inward_near, inward_far)
 
 
-def sides(mesh, speed, shift, dt, dtype) -> Sides | None:
-    """Set up the absorbing columns of `mesh`, or return None if neither side absorbs."""
+def sides(mesh, speed, shift, dt, dtype) -> Sides:
+    """Set up the absorbing columns of `mesh`; none where a side does not absorb."""
     left, right = mesh.absorbing[0], mesh.absorbing[1]
-    if not left and not right:
-        return None
     # One column more on each side: the half point beyond a node of the bound lies in the layer.
     left_end, right_start = left, mesh.nx - right - (1 if right else 0)
     u = _axis(mesh.nx, left, right)
     window = np.r_[0:left_end, right_start : mesh.nx]
-    thickness = mesh.spacing * max(left, right)
+    thickness = mesh.spacing * max(left, right, 1)
     b, a, g = (v[:, window].astype(dtype) for v in recursion(u, thickness, speed, shift, dt))
     psi = np.zeros((4, mesh.nz, len(window)), dtype=dtype)
     return Sides(np.uint64(left_end), np.uint64(right_start), psi, b, a, g)
 
 
-def layers(mesh, speed, shift, dt, dtype) -> Layers | None:
-    """Set up the absorbing rows of `mesh`, or return None if neither top nor bottom absorbs."""
+def layers(mesh, speed, shift, dt, dtype) -> Layers:
+    """Set up the absorbing rows of `mesh`; none where top or bottom does not absorb."""
     top, bottom = mesh.absorbing[2], mesh.absorbing[3]
-    if not top and not bottom:
-        return None
     u = _axis(mesh.nz, top, bottom)
     rows = np.flatnonzero((u > 0).any(axis=0))
     index = np.full(mesh.nz, -1, dtype=np.int64)
     index[rows] = np.arange(len(rows))
     stretch = mesh.stretch_node[-1] if bottom else mesh.stretch_node[0]
-    thickness = mesh.spacing * stretch * max(top, bottom)
+    thickness = mesh.spacing * stretch * max(top, bottom, 1)
     b, a, g = (v[:, rows].astype(dtype) for v in recursion(u, thickness, speed, shift, dt))
     psi = np.zeros((4, len(rows), mesh.pitch), dtype=dtype)
     return Layers(index, psi, b, a, g)

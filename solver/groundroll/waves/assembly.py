@@ -8,7 +8,9 @@ from groundroll.waves import absorbing
 from groundroll.waves.cell import BAND, INTERIOR, MARGIN_COLUMNS, MARGIN_ROWS
 from groundroll.waves.mesh import Mesh
 from groundroll.waves.operators import CLOSED_NODES
+from groundroll.waves.attenuation import Loss, memory
 from groundroll.waves.state import Columns, Ground, Material, Rows, flat_zeros, frame, inner
+from groundroll.waves.terrain import kernel_terrain, row_interpolation, softened
 
 U = np.uint64
 
@@ -45,6 +47,9 @@ def stiffness_at_edges(mesh: Mesh, p: Properties) -> tuple[np.ndarray, np.ndarra
     shape = (mesh.nz, mesh.nx)
     c11, c13, c33 = (np.array(np.broadcast_to(c, shape), dtype=float) for c in (p.c11, p.c13, p.c33))
     left, right, top, bottom = (edge == "free" for edge in mesh.edges)
+    if mesh.terrain is not None:
+        c11[0], c13[0], c33[0] = softened(c11[0], c13[0], c33[0], mesh.terrain.slope[0])
+        top = False
     for row in [0] * top + [-1] * bottom:
         c11[row] -= c13[row] ** 2 / c33[row]
         c13[row] = c33[row] = 0.0
@@ -84,7 +89,9 @@ def material(mesh: Mesh, p: Properties, dt: float, dtype) -> Material:
     if mesh.edges[1] != "absorb":
         shear[:, -1] = 0.0
     scale = dt / mesh.spacing
-    values = (scale * mask_x / p.density_x, scale * mask_z / p.density_z, *(scale * c for c in (c11, c13, c33, shear)))
+    mass_x = p.density_x * mesh.stretch(False, True) if mesh.terrain is not None else p.density_x
+    mass_z = p.density_z * mesh.stretch(True, False) if mesh.terrain is not None else p.density_z
+    values = (scale * mask_x / mass_x, scale * mask_z / mass_z, *(scale * c for c in (c11, c13, c33, shear)))
     for target, value in zip(flat, values, strict=True):
         inner(target, mesh)[:] = value
     even_row = (c11 == c33).all(axis=1)
@@ -92,7 +99,7 @@ def material(mesh: Mesh, p: Properties, dt: float, dtype) -> Material:
     return Material(*flat, even)
 
 
-def rows(mesh: Mesh, absorbing_rows: np.ndarray, dtype) -> Rows:
+def rows(mesh: Mesh, absorbing_rows: np.ndarray, elastic: bool, dtype) -> Rows:
     """Set up the z derivatives; `absorbing_rows` (nz,) marks rows inside an absorbing layer."""
     line = mesh.rows
     stretch = np.stack([mesh.stretch_node, mesh.stretch_half])
@@ -100,25 +107,42 @@ def rows(mesh: Mesh, absorbing_rows: np.ndarray, dtype) -> Rows:
     first = (line.first + MARGIN_ROWS) * mesh.pitch + MARGIN_COLUMNS
     node, half = (np.array(INTERIOR) / s[:, None] for s in stretch)
     general = line.closed | absorbing_rows
-    plain = [
-        len(g) == BAND and not g.any() for g in (general[BAND * b : BAND * (b + 1)] for b in range(mesh.bands))
-    ]
+    if mesh.terrain is not None:
+        general[: mesh.terrain.rows] = True
+    plain = np.array([not g.any() and len(g) == BAND for g in np.split(general, range(BAND, mesh.nz, BAND))])
     return Rows(
         count=U(mesh.nz),
         first=first.astype(U),
         weight=weight.astype(dtype),
         node=node.astype(dtype),
         half=half.astype(dtype),
-        plain=np.array(plain, dtype=np.uint8),
+        plain_velocity=plain.astype(np.uint8),
+        plain_stress=(plain & elastic).astype(np.uint8),
+        lag=lag_of(mesh),
     )
+
+
+def lag_of(mesh: Mesh) -> int:
+    """Return the bands by which a stage must lag: the reach of all operators along z."""
+    lag = reach_in_bands(mesh.rows.first, mesh.rows.weight)
+    if mesh.terrain is None:
+        return lag
+    return max(lag, reach_in_bands(*row_interpolation(mesh.nz)))
+
+
+def reach_in_bands(first: np.ndarray, weight: np.ndarray) -> int:
+    """Return how many bands away a row reads at most: what one stage of a wavefront must lag behind the last."""
+    row = np.arange(weight.shape[1])[:, None]
+    read = first[:, :, None] + np.arange(weight.shape[2])
+    away = np.abs(read // BAND - row // BAND)
+    return int(away[(weight != 0.0) & (read >= 0) & (read < weight.shape[1])].max())
 
 
 def columns(mesh: Mesh, sides, dtype) -> Columns:
     """Set up the x derivatives."""
     closed_left = CLOSED_NODES if mesh.edges[0] != "absorb" else 0
     closed_right = mesh.nx - (CLOSED_NODES if mesh.edges[1] != "absorb" else 0)
-    left = max(closed_left, int(sides.left) if sides is not None else 0)
-    right = min(closed_right, int(sides.right) if sides is not None else mesh.nx)
+    left, right = max(closed_left, int(sides.left)), min(closed_right, int(sides.right))
     line = mesh.columns
     return Columns(
         c=np.array(INTERIOR, dtype=dtype),
@@ -131,16 +155,17 @@ def columns(mesh: Mesh, sides, dtype) -> Columns:
     )
 
 
-def assemble(mesh: Mesh, p: Properties, dt: float, damping: EdgeDamping, dtype) -> Ground:
-    """Return all that the kernels need of mesh, ground and edges for steps of `dt` s."""
+def assemble(mesh: Mesh, p: Properties, dt: float, damping: EdgeDamping, dtype, loss: Loss | None = None) -> Ground:
+    """Return all that the kernels need of mesh, ground, edges and attenuation for steps of `dt` s."""
     sides = absorbing.sides(mesh, damping.speed, damping.shift, dt, dtype)
     layers = absorbing.layers(mesh, damping.speed, damping.shift, dt, dtype)
-    in_layer = layers.index >= 0 if layers is not None else np.zeros(mesh.nz, dtype=bool)
     return Ground(
         frame=frame(mesh),
         material=material(mesh, p, dt, dtype),
-        rows=rows(mesh, in_layer, dtype),
+        rows=rows(mesh, layers.index >= 0, loss is None, dtype),
         columns=columns(mesh, sides, dtype),
         sides=sides,
         layers=layers,
+        terrain=kernel_terrain(mesh, dtype),
+        memory=memory(mesh, loss, dt, dtype),
     )

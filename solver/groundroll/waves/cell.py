@@ -32,7 +32,7 @@ OPERATORS = (NODE_STRAIN, HALF_STRAIN, NODE_MOMENTUM, HALF_MOMENTUM)
 # 6th-order staggered first derivative (spacing 1): f'(0) = sum c_j (f(j - 1/2) - f(1/2 - j)).
 INTERIOR = (75.0 / 64.0, -25.0 / 384.0, 3.0 / 640.0)
 
-# Rows (or columns) by which one half step reaches beyond the cell it updates.
-REACH = 3
+# Columns by which one stage reaches beyond the cell it updates, on level ground and under terrain.
+REACH, TERRAIN_REACH = 3, 4
 # Rows per band: the row kernels advance two rows at once, which shares loads between them.
 BAND = 2

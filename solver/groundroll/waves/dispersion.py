@@ -33,8 +33,12 @@ def _blocks(n: int, width: int):
     return (slice(a, min(a + size, n)) for a in range(0, n, size))
 
 
-def resynthesise(samples, times_in, omega_in, times_out, omega_out, weight):
-    """Return Re sum_k weight_k exp(i omega_out_k t) dt sum_n samples_n exp(-i omega_in_k t_n).
+def _waves(omega, times):
+    return np.exp(1j * np.outer(omega, times))
+
+
+def resynthesise(samples, times_in, omega_in, times_out, omega_out, weight, waves=_waves):
+    """Return Re sum_k weight_k waves(omega_out_k, t) dt sum_n samples_n exp(-i omega_in_k t_n).
 
     `samples` (trace, n) at even `times_in`; result (trace, len(times_out)).
     """
@@ -43,7 +47,7 @@ def resynthesise(samples, times_in, omega_in, times_out, omega_out, weight):
     for block in _blocks(len(omega_in), max(len(times_in), len(times_out))):
         forward = np.exp(-1j * np.outer(times_in, omega_in[block]))
         spectrum = (samples @ forward) * (dt * weight[block])
-        out += (spectrum @ np.exp(1j * np.outer(omega_out[block], times_out))).real
+        out += (spectrum @ waves(omega_out[block], times_out)).real
     return out
 
 
@@ -61,13 +65,28 @@ def predistort(pulse, times_in, dt, steps, start=0.0):
     return resynthesise(pulse[None, :], times_in, omega, times_out, omega_s, weight)[0]
 
 
-def correct(traces, dt, times_out, top, start=0.0):
-    """Return `traces` (trace, n) sampled at start + n dt freed of time dispersion, at `times_out`.
+def correct(traces, dt, times_out, top, start=0.0, quantity="velocity"):
+    """Return `traces` (trace, n) of velocity sampled at start + n dt freed of time dispersion, at `times_out`.
 
-    Frequencies up to `top` (Hz) are kept; the last part of the record should be tapered by the caller if
-    it does not end quietly.
+    `quantity` "acceleration" or "displacement" returns their derivative or their integral from t = 0, formed
+    exactly from the same spectrum. Frequencies up to `top` (Hz) are kept; the last part of the record should
+    be tapered by the caller if it does not end quietly.
     """
     times_in = start + dt * np.arange(traces.shape[1])
     span = 1.25 * (times_in[-1] - min(start, 0.0)) + 64.0 * dt
     omega, weight = _frequencies(span, min(2.0 * np.pi * top, 1.9 / dt))
-    return resynthesise(traces, times_in, scheme_frequency(omega, dt), times_out, omega, weight)
+    return resynthesise(traces, times_in, scheme_frequency(omega, dt), times_out, omega, weight, MOTION[quantity])
+
+
+def _integral(omega, times):
+    """Integral of exp(i omega t) from 0 to t, (omega, time)."""
+    safe = np.where(omega == 0.0, 1.0, omega)[:, None]
+    whole = (_waves(omega, times) - 1.0) / (1j * safe)
+    return np.where(omega[:, None] == 0.0, times[None, :], whole)
+
+
+MOTION = {
+    "velocity": _waves,
+    "acceleration": lambda omega, times: 1j * omega[:, None] * _waves(omega, times),
+    "displacement": _integral,
+}

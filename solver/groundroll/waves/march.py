@@ -5,12 +5,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from groundroll.waves.cell import REACH
+from groundroll.waves.cell import REACH, TERRAIN_REACH
 from groundroll.waves.marching import plain_pass, strip_pass
 from groundroll.waves.points import Receivers, Sources
 from groundroll.waves.state import Fields, Ground
 
-SCRATCH_ROWS = 4
+SCRATCH_ROWS = 7
 
 
 @dataclass(frozen=True)
@@ -24,24 +24,24 @@ class Order:
 PLAIN = Order(steps=1, strip=None)
 
 
-def strip_blocks(width: int, strip: int, blocks: int, stages: int):
+def strip_blocks(width: int, strip: int, blocks: int, stages: int, reach: int):
     """Return (bounds, slopes) of each block of strips, and of the wedges between the blocks.
 
-    A block's outer bounds stand still at the ends of the mesh and shrink REACH columns per stage where
+    A block's outer bounds stand still at the ends of the mesh and shrink `reach` columns per stage where
     it meets another block; bounds inside move left. A block is at least wide enough to shrink.
     """
-    least = 2 * REACH * stages + 1
+    least = 2 * reach * stages + 1
     blocks = max(1, min(blocks, width // least))
     cuts = np.linspace(0, width, blocks + 1).astype(np.int64)
     result = []
     for low, high in zip(cuts[:-1], cuts[1:], strict=True):
         count = max(1, min(round((high - low) / strip), (high - low) // least))
         bounds = np.linspace(low, high, count + 1).astype(np.int64)
-        slopes = np.full(count + 1, -REACH)
-        slopes[0] = REACH if low > 0 else 0
-        slopes[-1] = -REACH if high < width else 0
+        slopes = np.full(count + 1, -reach)
+        slopes[0] = reach if low > 0 else 0
+        slopes[-1] = -reach if high < width else 0
         result.append((bounds, slopes))
-    wedges = [(np.array([cut, cut]), np.array([-REACH, REACH])) for cut in cuts[1:-1]]
+    wedges = [(np.array([cut, cut]), np.array([-reach, reach])) for cut in cuts[1:-1]]
     return result, wedges
 
 
@@ -64,7 +64,9 @@ class March:
         if self.order.strip is None:
             plain_pass(self.step, steps, self.mesh.nx, self.mesh.bands, *self._data(0))
         else:
-            blocks, wedges = strip_blocks(self.mesh.nx, self.order.strip, len(self._scratch), 2 * steps)
+            stages = self.ground.frame.phases * steps
+            reach = REACH if self.mesh.terrain is None else TERRAIN_REACH
+            blocks, wedges = strip_blocks(self.mesh.nx, self.order.strip, len(self._scratch), stages, reach)
             for group in (blocks, wedges):
                 self._side_by_side(group, steps)
         self.step += steps

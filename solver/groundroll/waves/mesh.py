@@ -7,13 +7,16 @@ import numpy as np
 
 from groundroll.waves.cell import BAND, MARGIN_COLUMNS, MARGIN_ROWS
 from groundroll.waves.operators import Line, line
+from groundroll.waves.terrain import Relief, relief
 
 SIDES = ("left", "right", "top", "bottom")
 
 
 @dataclass(frozen=True)
 class Mesh:
-    """A mesh of `nz` rows and `nx` columns, absorbing layers included.
+    """A mesh of `nz` rows and `nx` columns, absorbing layers included; level unless `terrain` maps it.
+
+    `datum` is z (m, down from the scenario's datum) of the level mesh's row at depth 0.
 
     `spacing` h (m) is the width of a column and of a row index; row k lies at depth `depth_node[k]`
     (m), its half row at `depth_half[k]`; `stretch_node`, `stretch_half` are J = dz/d(k h) there.
@@ -31,6 +34,8 @@ class Mesh:
     depth_half: np.ndarray
     stretch_node: np.ndarray
     stretch_half: np.ndarray
+    terrain: Relief | None = None
+    datum: float = 0.0
 
     @property
     def pitch(self) -> int:
@@ -69,7 +74,14 @@ class Mesh:
     @cached_property
     def rows(self) -> Line:
         """Operators along z, before division by the stretch J."""
-        return line(self.nz, self.edges[2], self.edges[3])
+        top = "sloped" if self.terrain is not None else self.edges[2]
+        return line(self.nz, top, self.edges[3])
+
+    def stretch(self, half_row: bool, half_column: bool) -> np.ndarray:
+        """Return J = dz/d(k h) at the given kind of position, (nz, nx) or (nz, 1)."""
+        if self.terrain is not None:
+            return self.terrain.stretch(half_row, half_column)
+        return (self.stretch_half if half_row else self.stretch_node)[:, None]
 
     @property
     def section_columns(self) -> slice:
@@ -115,3 +127,19 @@ def with_depths(mesh: Mesh, depth_of, stretch_of) -> Mesh:
         stretch_node=stretch_of(zeta),
         stretch_half=stretch_of(half),
     )
+
+
+def with_terrain(mesh: Mesh, elevation, slope) -> Mesh:
+    """Return `mesh` laid under a ground surface: elevation(x) and its derivative slope(x), both functions.
+
+    The level mesh stands for the middle between the highest and the lowest ground, where it is neither
+    stretched nor squeezed. Outside the section the ground must be level.
+    """
+    x = np.stack([mesh.x_node, mesh.x_half])
+    heights = elevation(x.ravel()).reshape(x.shape)
+    middle = 0.5 * (heights.max() + heights.min())
+    shift = -(heights - middle)
+    level = np.stack([mesh.depth_node, mesh.depth_half])
+    rise = np.stack([mesh.stretch_node, mesh.stretch_half])
+    mapping = relief(shift, -slope(x.ravel()).reshape(x.shape), level, rise, 2.0 * np.abs(shift).max())
+    return replace(mesh, terrain=mapping, datum=-middle)

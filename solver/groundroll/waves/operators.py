@@ -13,6 +13,7 @@ Rayleigh waves by us.
 
 Which pair serves an edge:
     free    strain Dn, Dh; momentum An, Dh (the traction on the edge is held, so Ah = Dh there)
+    sloped  strain Dn, Dh; momentum An, Ah (a free surface under terrain: the traction is free, not held)
     rigid   strain An, Dh; momentum Dn, Dh (velocity on the edge is held at zero)
     absorb  the interior stencil cut off at the mesh: its own negative adjoint with unit norms
 """
@@ -92,6 +93,8 @@ def edge_operators(condition: str) -> tuple[np.ndarray, ...]:
     c = closure()
     if condition == "free":
         return c.dn, c.dh, c.an, c.dh
+    if condition == "sloped":
+        return c.dn, c.dh, c.an, c.ah
     if condition == "rigid":
         return c.an, c.dh, c.dn, c.dh
     raise ValueError(condition)
@@ -115,7 +118,7 @@ class Line:
 
 
 def line(n: int, near: str, far: str) -> Line:
-    """Build the operators along an axis whose ends are "free", "rigid" or "absorb"."""
+    """Build the operators along an axis whose ends are "free", "sloped", "rigid" or "absorb"."""
     first = np.empty((len(OPERATORS), n), dtype=np.int64)
     weight = np.zeros((len(OPERATORS), n, TAPS))
     c1, c2, c3 = INTERIOR

@@ -18,6 +18,7 @@ from groundroll.waves.cell import BAND
 from groundroll.waves.mesh import Mesh
 from groundroll.waves.operators import closure
 from groundroll.waves.points import Injection, Receivers
+from groundroll.waves.terrain import KAPPA, softened
 
 SIX = 6
 U = np.uint64
@@ -45,10 +46,13 @@ class Cells:
     column_weight: np.ndarray
 
 
-def row_position(mesh: Mesh, depth: float) -> float:
-    """Return the fractional row index at `depth` (m), node rows at whole numbers."""
-    both = np.stack([mesh.depth_node, mesh.depth_half], axis=1).ravel()
-    return float(np.interp(depth, both, 0.5 * np.arange(len(both))))
+def row_position(mesh: Mesh, x: float, depth: float) -> float:
+    """Return the fractional row index at `depth` (m) below the surface at `x`, node rows at whole numbers."""
+    below = np.stack([mesh.depth_node, mesh.depth_half], axis=1)
+    if mesh.terrain is not None:
+        index, weight = lagrange((x - mesh.x0) / mesh.spacing, 0, mesh.nx - 1)
+        below = below + (weight @ mesh.terrain.shift[0][index]) * (mesh.terrain.blend.T - 1.0)
+    return float(np.interp(depth, below.ravel(), 0.5 * np.arange(below.size)))
 
 
 def cells_of(mesh: Mesh, field: int, x: float, depth: float) -> Cells:
@@ -60,7 +64,7 @@ def cells_of(mesh: Mesh, field: int, x: float, depth: float) -> Cells:
     if on_surface(mesh, depth):
         trace = closure().trace if half_row else np.ones(1)
         return Cells(np.arange(len(trace)), column, trace, column_weight)
-    row, row_weight = lagrange(row_position(mesh, depth) - 0.5 * half_row, 0, last_row)
+    row, row_weight = lagrange(row_position(mesh, x, depth) - 0.5 * half_row, 0, last_row)
     return Cells(row, column, row_weight, column_weight)
 
 
@@ -73,10 +77,9 @@ def over_norm(mesh: Mesh, field: int, cells: Cells) -> np.ndarray:
     half_column, half_row = POSITION[field]
     columns = mesh.columns.half_norm if half_column else mesh.columns.node_norm
     rows = mesh.rows.half_norm if half_row else mesh.rows.node_norm
-    stretch = mesh.stretch_half if half_row else mesh.stretch_node
-    along_z = cells.row_weight / (rows[cells.row] * stretch[cells.row])
-    along_x = cells.column_weight / columns[cells.column]
-    return np.outer(along_z, along_x) / mesh.spacing**2
+    stretch = np.broadcast_to(mesh.stretch(half_row, half_column), (mesh.nz, mesh.nx))
+    weight = np.outer(cells.row_weight / rows[cells.row], cells.column_weight / columns[cells.column])
+    return weight / stretch[np.ix_(cells.row, cells.column)] / mesh.spacing**2
 
 
 class Entries:
@@ -111,7 +114,7 @@ def add_force(mesh, p: Properties, forces: Entries, tractions: Entries, x, depth
     for field, amount in ((VX, force[0]), (VZ, force[1])):
         if amount == 0.0:
             continue
-        if field == VZ and on_surface(mesh, depth):
+        if field == VZ and on_surface(mesh, depth) and mesh.terrain is None:
             column, weight = cells_of(mesh, SZZ, x, depth).column, cells_of(mesh, SZZ, x, depth).column_weight
             traction = -amount * weight / (mesh.columns.node_norm[column] * mesh.spacing)
             tractions.add(SZZ, [0], column, traction, pulse)
@@ -121,6 +124,25 @@ def add_force(mesh, p: Properties, forces: Entries, tractions: Entries, x, depth
         density = np.broadcast_to(p.density_x if field == VX else p.density_z, (mesh.nz, mesh.nx))
         weight = dt * amount * over_norm(mesh, field, cells) / density[np.ix_(cells.row, cells.column)]
         forces.add(field, cells.row, cells.column, weight, pulse)
+    if on_surface(mesh, depth) and mesh.terrain is not None:
+        add_sloped_traction(mesh, p, tractions, x, force, pulse)
+
+
+def add_sloped_traction(mesh, p: Properties, tractions: Entries, x, force, pulse) -> None:
+    """Add what the softened row 0 under terrain lacks of a surface force (fx, fz per metre of x).
+
+    (sxx, szz) += -(1 - kappa) (dfz + q dfx) (lam - L p, L - lam p) / (p^2 L - 2 p lam + L), with p = q^2 and
+    the stiffness (L, lam, L) of the ground; here for any (c11, c13, c33).
+    """
+    cells = cells_of(mesh, SZZ, x, 0.0)
+    column = cells.column
+    slope = mesh.terrain.slope[0][column]
+    square = slope**2
+    c11, c13, c33 = (np.broadcast_to(c, (mesh.nz, mesh.nx))[0, column] for c in (p.c11, p.c13, p.c33))
+    share = (1.0 - KAPPA) / (square**2 * c11 - 2.0 * square * c13 + c33)
+    normal = -(force[1] + slope * force[0]) * cells.column_weight / (mesh.columns.node_norm[column] * mesh.spacing)
+    tractions.add(SXX, [0], column, normal * share * (c13 - c11 * square), pulse)
+    tractions.add(SZZ, [0], column, normal * share * (c33 - c13 * square), pulse)
 
 
 def surface_coupling(mesh, p: Properties, column) -> np.ndarray:
@@ -132,18 +154,32 @@ def surface_coupling(mesh, p: Properties, column) -> np.ndarray:
 def add_moment(mesh, p: Properties, moments: Entries, x, depth, moment, pulse) -> None:
     """Add a moment tensor (Mxx, Mzz, Mxz) N: stress is lowered by its rate, sigma -= w dM/(H h^2).
 
-    On the row of a free surface szz stays zero: Mzz acts on sxx through c13/c33 there.
+    On the row of a free surface the stiffness C is replaced by C0, and so is what the moment does:
+    sigma -= w C0 C^-1 dM/(H h^2).
     """
     mxx, mzz, mxz = moment
     cells = cells_of(mesh, SXX, x, depth)
     weight = over_norm(mesh, SXX, cells)
-    on_free_row = (cells.row == 0) & (mesh.edges[2] == "free")
-    coupling = np.where(on_free_row[:, None], surface_coupling(mesh, p, cells.column)[None, :], 0.0)
-    moments.add(SXX, cells.row, cells.column, -weight * (mxx - coupling * mzz), pulse)
-    moments.add(SZZ, cells.row, cells.column, -weight * mzz * ~on_free_row[:, None], pulse)
+    pull_x, pull_z = np.full(weight.shape, float(mxx)), np.full(weight.shape, float(mzz))
+    if cells.row[0] == 0 and mesh.edges[2] == "free":
+        pull_x[0], pull_z[0] = surface_moment(mesh, p, cells.column, mxx, mzz)
+    moments.add(SXX, cells.row, cells.column, -weight * pull_x, pulse)
+    moments.add(SZZ, cells.row, cells.column, -weight * pull_z, pulse)
     if mxz != 0.0:
         cells = cells_of(mesh, SXZ, x, depth)
         moments.add(SXZ, cells.row, cells.column, -mxz * over_norm(mesh, SXZ, cells), pulse)
+
+
+def surface_moment(mesh, p: Properties, column, mxx, mzz) -> tuple[np.ndarray, np.ndarray]:
+    """Return C0 C^-1 (Mxx, Mzz) on row 0 at `column`."""
+    c11, c13, c33 = (np.broadcast_to(c, (mesh.nz, mesh.nx))[0, column] for c in (p.c11, p.c13, p.c33))
+    determinant = c11 * c33 - c13**2
+    ex, ez = (c33 * mxx - c13 * mzz) / determinant, (c11 * mzz - c13 * mxx) / determinant
+    slope = mesh.terrain.slope[0][column] if mesh.terrain is not None else None
+    if slope is None:
+        return determinant / c33 * ex, np.zeros(len(column))
+    s11, s13, s33 = softened(c11, c13, c33, slope)
+    return s11 * ex + s13 * ez, s13 * ex + s33 * ez
 
 
 def injection(mesh: Mesh, entries: Entries, series: np.ndarray, dtype) -> Injection:

@@ -3,6 +3,7 @@
 Records are raw (velocity at half steps of the scheme) until `velocity` frees them of time dispersion.
 """
 
+import time as clock_time
 from collections.abc import Callable
 from dataclasses import dataclass
 
@@ -12,7 +13,7 @@ from groundroll.waves import dispersion
 from groundroll.waves.assembly import EdgeDamping, Properties, assemble
 from groundroll.waves.march import March, Order
 from groundroll.waves.mesh import Mesh
-from groundroll.waves.placement import SIX, Entries, add_force, add_moment, injection, receivers
+from groundroll.waves.placement import SIX, Entries, add_force, add_moment, injection, on_surface, receivers
 from groundroll.waves.points import Sources
 from groundroll.waves.state import new_fields
 
@@ -80,12 +81,13 @@ class Simulation:
     ):
         self.mesh, self.clock, self.properties = mesh, time, properties
         self.longest_pass = max(order.steps, 1)
+        self._sources, self._series = sources, predistorted(sources, time)
         ground = assemble(mesh, properties, time.dt, damping, dtype)
         self.march = March(
             mesh,
             ground,
             new_fields(mesh, dtype),
-            inject(mesh, properties, sources, time, dtype),
+            inject(mesh, properties, sources, self._series, time.dt, dtype),
             receivers(mesh, points, self.longest_pass),
             order,
             threads,
@@ -106,17 +108,45 @@ class Simulation:
             by_column = self.march.receivers.trace[:n].reshape(n, self.traces.shape[1], 2, SIX)
             self.traces[start : start + n] = by_column.sum(axis=3)
 
-    def velocity(self, times: np.ndarray) -> np.ndarray:
-        """Return velocity (receiver, 2, time) at `times` (s), freed of time dispersion, of the steps done so far.
+    def motion(self, times: np.ndarray, quantity: str = "velocity") -> np.ndarray:
+        """Return `quantity` (receiver, 2, time) at `times` (s), freed of time dispersion, of the steps done so far.
 
-        Past the last step the record is zero; the last RUN_OUT periods before it are faded out.
+        Past the last step velocity is zero; the last half of RUN_OUT periods before it are faded out.
         """
-        done = self.traces[: max(self.step, 2)].transpose(1, 2, 0).reshape(-1, max(self.step, 2))
+        n = max(self.step, 2)
+        done = self.traces[:n].transpose(1, 2, 0).reshape(-1, n)
         if not len(done):
             return np.zeros((0, 2, len(times)))
-        samples = done * self._fade(done.shape[1])
-        clean = dispersion.correct(samples, self.clock.dt, times, self.clock.top, start=0.5 * self.clock.dt)
+        start = 0.5 * self.clock.dt
+        clean = dispersion.correct(done * self._fade(n), self.clock.dt, times, self.clock.top, start, quantity)
         return clean.reshape(-1, 2, len(times))
+
+    def velocity(self, times: np.ndarray) -> np.ndarray:
+        """Return velocity (receiver, 2, time), see `motion`."""
+        return self.motion(times, "velocity")
+
+    def impulse(self) -> np.ndarray:
+        """Return the impulse (N s/m) that the forces have given after each step, (step, 2).
+
+        A force acts as dt F s(n dt); a surface traction is prescribed by increments, so it acts as s(n dt) - s(0).
+        """
+        total = np.zeros((self.clock.steps, 2))
+        for source, series in zip(self._sources, self._series, strict=True):
+            for component, amount in enumerate(source.force or (0.0, 0.0)):
+                prescribed = component == 1 and self.mesh.terrain is None and on_surface(self.mesh, source.depth)
+                acting = series[:-1] - (series[0] if prescribed else 0.0)
+                total[:, component] += self.clock.dt * amount * np.cumsum(acting)
+        return total
+
+    def warm_up(self) -> float:
+        """Compile the kernels, or load them from the cache, without taking a step; return the seconds it took."""
+        start = clock_time.perf_counter()
+        self.march.advance(0)
+        return clock_time.perf_counter() - start
+
+    def close(self) -> None:
+        """Let the worker threads go."""
+        self.march.close()
 
     def _fade(self, n: int) -> np.ndarray:
         length = min(n, int(0.5 * RUN_OUT / self.clock.top / self.clock.dt))
@@ -126,17 +156,21 @@ class Simulation:
         return fade
 
 
-def inject(mesh, properties, sources, time: Clock, dtype) -> Sources:
-    """Place all sources and predistort their pulses for the scheme's time dispersion."""
-    forces, moments = Entries(), Entries()
-    series = np.zeros((len(sources), time.steps + 1))
+def predistorted(sources: list[PointSource], time: Clock) -> np.ndarray:
+    """Return the sources' series (source, steps + 1), predistorted for the scheme's time dispersion."""
     fine = time.dt * np.arange(time.steps + 1)
+    series = [dispersion.predistort(s.pulse(fine), fine, time.dt, time.steps + 1) for s in sources]
+    return np.array(series).reshape(len(sources), time.steps + 1)
+
+
+def inject(mesh, properties, sources, series, dt: float, dtype) -> Sources:
+    """Place all sources with their `series` (source, steps + 1)."""
+    forces, moments = Entries(), Entries()
     for number, source in enumerate(sources):
         if source.force is not None:
-            add_force(mesh, properties, forces, moments, source.x, source.depth, source.force, number, time.dt)
+            add_force(mesh, properties, forces, moments, source.x, source.depth, source.force, number, dt)
         if source.moment is not None:
             add_moment(mesh, properties, moments, source.x, source.depth, source.moment, number)
-        series[number] = dispersion.predistort(source.pulse(fine), fine, time.dt, time.steps + 1)
     return Sources(
         injection(mesh, forces, series[:, :-1], dtype),
         injection(mesh, moments, np.diff(series, axis=1), dtype),

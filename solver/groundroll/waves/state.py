@@ -1,8 +1,6 @@
 """What the kernels work on: flat arrays grouped by meaning, all of one precision.
 
-Every group is a NamedTuple so that compiled code sees plain arrays under readable names. Optional
-groups (absorbing rows, attenuation, terrain) are None when the run has none of it, and the compiler
-then drops their branches.
+Every group is a NamedTuple so that compiled code sees plain arrays under readable names.
 """
 
 from typing import NamedTuple
@@ -48,7 +46,9 @@ class Rows(NamedTuple):
     weight: np.ndarray
     node: np.ndarray
     half: np.ndarray
-    plain: np.ndarray
+    plain_velocity: np.ndarray
+    plain_stress: np.ndarray
+    lag: int
 
 
 class Columns(NamedTuple):
@@ -66,10 +66,12 @@ class Columns(NamedTuple):
 
 
 class Frame(NamedTuple):
-    """Sizes: padded row length, index of cell [0, 0]."""
+    """Sizes: padded row length, index of cell [0, 0], columns of margin, stages of a time step."""
 
     pitch: int
     origin: int
+    margin: int
+    phases: int
 
 
 class Sides(NamedTuple):
@@ -97,15 +99,69 @@ class Layers(NamedTuple):
     g: np.ndarray
 
 
+class Terrain(NamedTuple):
+    """The terrain-following mapping, see `terrain_kernels.py`; `rows` = 0 on level ground.
+
+    The first `rows` rows are mapped; helpers stand on `helper_rows`. Column vectors (2, pitch) at node and
+    half columns, padded: `slope` = d shift/dx, `shift` (m). Row vectors (2, nz) at node and half rows:
+    `blend`, `bend`, `rise`. Interpolation along z (2, nz, 10), from nodes and from halves: `plain`, and
+    `blended` = times the blend of the rows read; `first` their first flat entry. `operator` (4, nz, TAPS):
+    the derivatives not divided by J, `operator_first` as in `Rows`. `across` (TAPS): interpolation along x.
+    """
+
+    rows: int
+    helper_rows: int
+    slope: np.ndarray
+    shift: np.ndarray
+    blend: np.ndarray
+    bend: np.ndarray
+    rise: np.ndarray
+    first: np.ndarray
+    plain: np.ndarray
+    blended: np.ndarray
+    operator_first: np.ndarray
+    operator: np.ndarray
+    across: np.ndarray
+    tx: np.ndarray
+    tz: np.ndarray
+    gx: np.ndarray
+    gz: np.ndarray
+
+
+class Memory(NamedTuple):
+    """Attenuation, see `memory_kernels.py`; `count` = 0 where nothing damps.
+
+    `decay`, `gain` (count,): E_l and 1 - E_l; `y_old` ... `z_new`: shapes times the weights of old xi and of
+    the strain in the mean of a step; `xi` (3 count, flat): memory variables of exx, ezz, 2exz; `p1`, `p2`,
+    `s1`, `s2` at nodes and `h1`, `h2` at sxz: coefficients of both shapes, flat."""
+
+    count: int
+    decay: np.ndarray
+    gain: np.ndarray
+    y_old: np.ndarray
+    y_new: np.ndarray
+    z_old: np.ndarray
+    z_new: np.ndarray
+    xi: np.ndarray
+    p1: np.ndarray
+    p2: np.ndarray
+    s1: np.ndarray
+    s2: np.ndarray
+    h1: np.ndarray
+    h2: np.ndarray
+
+
 class Ground(NamedTuple):
-    """All that stays while time runs, except the convolution variables."""
+    """All that stays while time runs, except convolution and memory variables and the terrain's helpers."""
 
     frame: Frame
     material: Material
     rows: Rows
     columns: Columns
-    sides: Sides | None
-    layers: Layers | None
+    sides: Sides
+    layers: Layers
+    terrain: Terrain
+    memory: Memory
 
 
 def flat_zeros(mesh, count: int, dtype) -> list[np.ndarray]:
@@ -127,7 +183,8 @@ def inner(flat: np.ndarray, mesh) -> np.ndarray:
 
 
 def frame(mesh) -> Frame:
-    return Frame(np.uint64(mesh.pitch), np.uint64(MARGIN_ROWS * mesh.pitch + MARGIN_COLUMNS))
+    origin = MARGIN_ROWS * mesh.pitch + MARGIN_COLUMNS
+    return Frame(np.uint64(mesh.pitch), np.uint64(origin), np.uint64(MARGIN_COLUMNS), 2 if mesh.terrain is None else 4)
 
 
 def new_fields(mesh, dtype) -> Fields:

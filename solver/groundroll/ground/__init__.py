@@ -1,0 +1,1 @@
+"""What the scenario says about the ground, as properties sampled on a mesh."""

@@ -1,0 +1,3 @@
+class RandomChange: ...
+def random_change_of(ground, section, thickest):
+    return None

@@ -1,0 +1,27 @@
+"""The terrain of a scenario as a smooth surface."""
+
+import numpy as np
+
+from groundroll.scenario import Scenario
+
+from .csv_files import Column, read_columns
+from .terrain import Surface, bell, flat, through_points
+
+COLUMNS = (Column("x"), Column("elevation"))
+
+
+def surface_of(scenario: Scenario, radius: float) -> Surface:
+    """The ground surface, kinks rounded over `radius` (m). InputError for a bad terrain file."""
+    terrain, length = scenario.ground.terrain, scenario.section.length
+    if terrain is None:
+        return flat()
+    if terrain.shape is not None:
+        height = terrain.height if terrain.shape == "hill" else -terrain.height
+        return bell(terrain.centre, height, terrain.half_width, length, radius)
+    if terrain.points is not None:
+        x, elevation = zip(*terrain.points, strict=True)
+    else:
+        table = read_columns(scenario.folder / terrain.file, COLUMNS)
+        table.must_rise("x")
+        x, elevation = table["x"], table["elevation"]
+    return through_points(np.array(x, dtype=float), np.array(elevation, dtype=float), length, radius)

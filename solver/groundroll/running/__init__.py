@@ -1,0 +1,1 @@
+"""From a scenario to its records: plan, set-up, the time loop and its observers."""

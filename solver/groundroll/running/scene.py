@@ -1,0 +1,101 @@
+"""What the records say about the scene: receiver lines, sources, interfaces, travel-time guides, ground."""
+
+import numpy as np
+
+from groundroll.exact.rayleigh import speed_ratio
+from groundroll.ground.model import GroundModel
+from groundroll.records import ReceiverLine
+from groundroll.running.plan import Plan
+from groundroll.scenario import Receivers, Scenario
+
+# The stored picture of the ground is thinned to about this many nodes a side.
+GROUND_NODES = 1200
+
+
+def positions(line: Receivers) -> np.ndarray:
+    """Return (receiver, 2): x and depth as the scenario means it."""
+    if line.at is not None:
+        return np.array(line.at, dtype=float)
+    return np.linspace(line.start, line.end, line.count)
+
+
+def below_surface(x, depth, depth_from: str, model: GroundModel) -> np.ndarray:
+    """Return depths (m) below the ground surface at `x`."""
+    if depth_from == "surface":
+        return np.asarray(depth, dtype=float)
+    return np.asarray(depth) + model.surface_elevation(np.asarray(x, dtype=float))
+
+
+def receiver_line(line: Receivers, model: GroundModel) -> ReceiverLine:
+    x, depth = positions(line).T
+    depth = below_surface(x, depth, line.depth_from, model)
+    return ReceiverLine(name=line.name, x=x, depth=depth, elevation=model.surface_elevation(x) - depth)
+
+
+def source_depth(source, model: GroundModel) -> float:
+    return float(below_surface([source.x], [source.depth], source.depth_from, model)[0])
+
+
+def guides(scenario: Scenario, model: GroundModel) -> list[dict]:
+    """Return direct P, S and Rayleigh waves of the first source, at the speeds of the ground around it."""
+    source = scenario.sources[0]
+    depth, below = source_depth(source, model), 0.0
+    for thickness, vp, vs, *_ in model.layers_under(source.x):
+        below += thickness
+        if depth < below:
+            break
+    pulse = source.pulse
+    if pulse.file is not None:
+        return []
+    onset = (pulse.delay or 0.0) + (0.5 * pulse.duration if pulse.shape == "half_sine" else 0.0)
+    speeds = {"P": vp, "S": vs, "Rayleigh": vs * speed_ratio(vp / vs)}
+    return [{"wave": wave, "speed": float(c), "x0": source.x, "t0": onset} for wave, c in speeds.items()]
+
+
+def describe(made: Plan) -> dict:
+    """Return the arguments of `RecordsWriter.put_scene`; depths are below the datum."""
+    scenario, model = made.scenario, made.model
+    sources = [
+        {
+            "name": s.name,
+            "kind": s.kind,
+            "x": s.x,
+            "depth": source_depth(s, model) - float(model.surface_elevation(np.array([s.x]))[0]),
+        }
+        for s in scenario.sources
+    ]
+    x = np.linspace(0.0, scenario.section.length, 401)
+    elevation = model.surface_elevation(x)
+    return {
+        "title": scenario.title,
+        "sources": sources,
+        "interfaces": [{"x": list(map(float, px)), "depth": list(map(float, pz))} for px, pz in model.interfaces()],
+        "guides": guides(scenario, model),
+        "surface": {"x": x.tolist(), "depth": (-elevation).tolist()} if np.any(elevation) else None,
+    }
+
+
+def thinned(mesh) -> tuple[np.ndarray, np.ndarray]:
+    """Return the rows and columns of the section, thinned, at which the ground is stored."""
+    rows = np.arange(mesh.nz)[mesh.section_rows]
+    columns = np.arange(mesh.nx)[mesh.section_columns]
+    return rows[:: max(1, len(rows) // GROUND_NODES)], columns[:: max(1, len(columns) // GROUND_NODES)]
+
+
+def ground_arrays(made: Plan, properties) -> tuple:
+    """Return the arguments of `RecordsWriter.put_ground`: speeds and density as the solver sees them."""
+    mesh = made.mesh
+    rows, columns = thinned(mesh)
+    shape = (mesh.nz, mesh.nx)
+    density, c33, shear = (np.broadcast_to(v, shape)[np.ix_(rows, columns)] for v in (properties.density_x, properties.c33, properties.shear))
+    with np.errstate(divide="ignore", invalid="ignore"):
+        vs = np.sqrt(shear / density)
+        vp = np.sqrt(c33 / density)
+    frequency = made.scenario.section.highest_frequency
+    arrays = {
+        "vp": (vp, "m s-1", "P-wave speed on the mesh, along z"),
+        "vs": (vs, "m s-1", "S-wave speed on the mesh"),
+        "density": (density, "kg m-3", "density on the mesh"),
+        "points_per_wavelength": (vs / frequency / mesh.spacing, "1", "mesh points per S wavelength at the highest frequency"),
+    }
+    return arrays, mesh.x_node[columns], mesh.depth_node[rows]

@@ -1,0 +1,101 @@
+"""Totals over the section: momentum and energy, from the fields at the end of a step.
+
+    momentum_x = sum H rho vx h^2  (N s/m; H: quadrature weights times the stretch J), likewise z
+    energy     = 1/2 sum H rho (vx^2 + vz^2) h^2 + 1/2 <s(n), S s(n+1)>
+               = kinetic + 1/2 <s(n+1), S s(n+1)> - dt/2 <strain rate(n + 1/2), s(n+1)>      (J/m)
+
+S is the compliance. This energy is constant to rounding in a closed box without sources; the plain sum of
+kinetic and strain energy at one time would waver. Absorbing cells are left out; with attenuation the energy
+is that of the springs without the memory variables.
+"""
+
+import numpy as np
+
+from groundroll.waves.cell import HALF_STRAIN, NODE_STRAIN
+from groundroll.waves.jit import kernel
+from groundroll.waves.kernels import derivative_x, derivative_z
+
+
+@kernel
+def compliance_energy(xx, zz, c11, c13, c33):
+    """Return s : S : s of the normal stresses at one node; where c33 (c11) is 0 that stress is held at 0."""
+    determinant = c11 * c33 - c13 * c13
+    if c11 > 0.0 and c33 > 0.0 and determinant > 0.0:
+        return (c33 * xx * xx - 2.0 * c13 * xx * zz + c11 * zz * zz) / determinant
+    if c11 > 0.0:
+        return xx * xx / c11
+    if c33 > 0.0:
+        return zz * zz / c33
+    return 0.0
+
+
+@kernel
+def totals(first, last, a, b, weights, dt_over_h, ground, f, scratch, out):
+    """Sum rows first..last-1, columns a..b-1 into out = [momentum x, momentum z, kinetic, strain energy].
+
+    `weights` = (node columns, half columns, node rows, half rows); result per h^2. The material arrays
+    hold dt/(rho h) and stiffness dt/h, hence the factors of dt/h (`dt_over_h`).
+    """
+    node_x, half_x, node_z, half_z = weights
+    m = ground.material
+    ex, ez, p, q = scratch[0], scratch[1], scratch[2], scratch[3]
+    for k in range(first, last):
+        base = ground.frame.origin + k * ground.frame.pitch
+        derivative_x(ex, f.vx, base, k, a, b, NODE_STRAIN, ground)
+        derivative_z(ez, f.vz, k, a, b, NODE_STRAIN, ground)
+        derivative_x(p, f.vz, base, k, a, b, HALF_STRAIN, ground)
+        derivative_z(q, f.vx, k, a, b, HALF_STRAIN, ground)
+        for i in range(a, b):
+            at = base + i
+            if m.bx[at] > 0.0:
+                w = half_x[i] * node_z[k] * dt_over_h / np.float64(m.bx[at])
+                out[0] += w * f.vx[at]
+                out[2] += 0.5 * w * np.float64(f.vx[at]) ** 2
+            if m.bz[at] > 0.0:
+                w = node_x[i] * half_z[k] * dt_over_h / np.float64(m.bz[at])
+                out[1] += w * f.vz[at]
+                out[2] += 0.5 * w * np.float64(f.vz[at]) ** 2
+            xx, zz, xz = np.float64(f.sxx[at]), np.float64(f.szz[at]), np.float64(f.sxz[at])
+            c11, c13, c33, mu = np.float64(m.c11[at]), np.float64(m.c13[at]), np.float64(m.c33[at]), np.float64(m.mu[at])
+            # A stress held at zero on a free edge stores nothing, even where a source has prescribed it.
+            work = (xx * ex[i] if c11 > 0.0 else 0.0) + (zz * ez[i] if c33 > 0.0 else 0.0)
+            out[3] += 0.5 * node_x[i] * node_z[k] * dt_over_h * (compliance_energy(xx, zz, c11, c13, c33) - work)
+            if mu > 0.0:
+                out[3] += 0.5 * half_x[i] * half_z[k] * dt_over_h * (xz * xz / mu - xz * (p[i] + q[i]))
+
+
+def weights(mesh):
+    """Return (node columns, half columns, node rows, half rows): quadrature weights H, along z times J."""
+    return (
+        mesh.columns.node_norm,
+        mesh.columns.half_norm,
+        mesh.rows.node_norm * mesh.stretch_node,
+        mesh.rows.half_norm * mesh.stretch_half,
+    )
+
+
+class Ledger:
+    """Keeps the totals of a march: `time` (s) and `values` rows of (momentum x, z, kinetic, strain energy)."""
+
+    def __init__(self, mesh, march, dt: float):
+        self._mesh, self._march, self._dt = mesh, march, dt
+        self._weights = weights(mesh)
+        self._scratch = np.zeros((4, mesh.pitch), dtype=march.fields.vx.dtype)
+        self.steps: list[int] = []
+        self.values: list[np.ndarray] = []
+
+    def note(self) -> np.ndarray:
+        """Add and return the totals at the march's present step."""
+        mesh, ground = self._mesh, self._march.ground
+        left, right, top, bottom = mesh.absorbing
+        # The half column and half row beyond an absorbing bound lie in its layer, and so does their node's work.
+        columns = (left, mesh.nx - right - (1 if right else 0))
+        rows = (top, mesh.nz - bottom - (1 if bottom else 0))
+        out = np.zeros(4)
+        span = [np.uint64(v) for v in (*rows, *columns)]
+        dt_over_h = self._dt / mesh.spacing
+        totals(*span, self._weights, dt_over_h, ground, self._march.fields, self._scratch, out)
+        out *= mesh.spacing**2
+        self.steps.append(self._march.step)
+        self.values.append(out)
+        return out
