@@ -8,11 +8,11 @@ import numpy as np
 
 from groundroll.errors import InputError
 from groundroll.scenario.literal import plain
-from groundroll.scenario.messages import sentence
 
-from .csv_files import Column, Table, in_range, read_columns
+from .csv_files import read_columns
 from .fill import Filling
 from .material_columns import as_material, check_bulk, material_columns
+from .tables import Column, Table, refuse
 
 
 @dataclass(frozen=True)
@@ -32,12 +32,12 @@ def read_grid_csv(path: Path, filling: Filling) -> GridTable:
     x, column = np.unique(table["x"], return_inverse=True)
     depth, row = np.unique(table["depth"], return_inverse=True)
     at = row * len(x) + column
-    _check_whole(table, at, x, depth)
+    _check_whole(path, table, at, x, depth)
     order = np.argsort(at)
     return GridTable(x, depth, {name: values[order].reshape(len(depth), len(x)) for name, values in material.items()})
 
 
-def _check_whole(table: Table, at: np.ndarray, x: np.ndarray, depth: np.ndarray) -> None:
+def _check_whole(path: Path, table: Table, at: np.ndarray, x: np.ndarray, depth: np.ndarray) -> None:
     """InputError unless every x comes with every depth once."""
     seen = np.bincount(at, minlength=len(x) * len(depth))
     order = np.argsort(at, kind="stable")
@@ -46,10 +46,8 @@ def _check_whole(table: Table, at: np.ndarray, x: np.ndarray, depth: np.ndarray)
         table.refuse(again, "depth", f"x = {plain(float(table['x'][again]))} m has this depth twice", "each point once", fix)
     for missing in np.flatnonzero(seen == 0)[:1]:
         there = f"x = {plain(float(x[missing % len(x)]))} m, depth = {plain(float(depth[missing // len(x)]))} m"
-        received = f"{len(at)} points of {len(x)} x and {len(depth)} depths"
-        raise InputError(
-            sentence(str(table.path), int(table.lines[-1]), "grid", f"no value at {there}", received, "every x with every depth", "add it")
-        )
+        received = f"{len(at)} points for {len(x)} x and {len(depth)} depths"
+        refuse(str(path), "grid", f"no line at {there}", received, "every x with every depth", "add that line")
 
 
 def read_grid_hdf5(path: Path, filling: Filling) -> GridTable:
@@ -66,10 +64,6 @@ def read_grid_hdf5(path: Path, filling: Filling) -> GridTable:
     return GridTable(arrays["x"], arrays["depth"], material)
 
 
-def _refuse(path: Path, name: str, what: str, received: str, allowed: str, fix: str) -> None:
-    raise InputError(f"{path}: {name}: {what} (received {received}); allowed {allowed}; {fix}")
-
-
 def _datasets(path: Path, names: tuple[str, ...]) -> dict[str, np.ndarray]:
     """The datasets of these names at the root of the file, as float64."""
     example = f"an HDF5 file with datasets {', '.join(names)}"
@@ -80,7 +74,7 @@ def _datasets(path: Path, names: tuple[str, ...]) -> dict[str, np.ndarray]:
             there = {name: file[name] for name in names if isinstance(file.get(name), h5py.Dataset)}
             for name, dataset in there.items():
                 if dataset.dtype.kind not in "fiu":
-                    _refuse(path, name, "not numbers", str(dataset.dtype), "an array of numbers", "write it as float64")
+                    refuse(str(path), name, "not numbers", str(dataset.dtype), "an array of numbers", "write it as float64")
             return {name: np.asarray(dataset[()], dtype=float) for name, dataset in there.items()}
     except OSError:
         raise InputError(f"{path}: not an HDF5 file that can be read; allowed {example}; save it as HDF5 or netCDF-4") from None
@@ -89,33 +83,32 @@ def _datasets(path: Path, names: tuple[str, ...]) -> dict[str, np.ndarray]:
 def _check_axis(path: Path, name: str, axis: np.ndarray | None) -> None:
     allowed = "one or more increasing numbers in m"
     if axis is None:
-        _refuse(path, name, "missing", "nothing", allowed, f"add a dataset {name}")
+        refuse(str(path), name, "missing", "nothing", allowed, f"add a dataset {name}")
     if axis.ndim != 1 or not axis.size:
-        _refuse(path, name, "not a row of numbers", f"shape {axis.shape}", allowed, f"write {name} as a one-dimensional dataset")
+        refuse(str(path), name, "not a row of numbers", f"shape {axis.shape}", allowed, f"write {name} as a one-dimensional dataset")
     if not np.isfinite(axis).all():
-        _refuse(path, name, "not finite everywhere", "nan or inf", allowed, "correct it")
+        refuse(str(path), name, "not finite everywhere", "nan or inf", allowed, "correct it")
     for item in np.flatnonzero(np.diff(axis) <= 0.0)[:1]:
         received = f"{plain(float(axis[item + 1]))} after {plain(float(axis[item]))}"
-        _refuse(path, f"{name}[{item + 1}]", f"{name} does not increase", received, allowed, f"sort the grid by {name}")
+        refuse(f"{path} at [{item + 1}]", name, f"{name} does not increase", received, allowed, f"sort the grid by {name}")
 
 
 def _check_array(path: Path, column: Column, array: np.ndarray | None, shape: tuple[int, int]) -> None:
     name, allowed = column.name, f"shape {shape}, (depth, x)"
     if array is None:
         if not column.optional:
-            _refuse(path, name, "missing", "nothing", allowed, f"add a dataset {name}")
+            refuse(str(path), name, "missing", "nothing", allowed, f"add a dataset {name}")
         return
     if array.shape != shape:
         fix = "transpose it" if array.shape == shape[::-1] else "write one value per point of the grid"
-        _refuse(path, name, "not the shape of the grid", f"shape {array.shape}", allowed, fix)
+        refuse(str(path), name, "not the shape of the grid", f"shape {array.shape}", allowed, fix)
     if not np.isfinite(array).all():
         row, item = np.argwhere(~np.isfinite(array))[0]
-        _refuse(path, f"{name}[{row}, {item}]", "not a finite number", str(array[row, item]), "numbers in SI", "fill it in")
-    in_range(_flat_table(path, {name: array}), column)
+        refuse(f"{path} at [{row}, {item}]", name, "not a finite number", str(array[row, item]), "numbers in SI", "fill it in")
+    _flat_table(path, {name: array}).must_lie_within(column)
 
 
 def _flat_table(path: Path, arrays: dict[str, np.ndarray]) -> Table:
     """The arrays as a table whose rows are told by their indices."""
-    shape = next(iter(arrays.values())).shape
-    places = [f"[{row}, {item}]" for row, item in np.ndindex(shape)]
-    return Table(path, {name: array.ravel() for name, array in arrays.items()}, np.array(places))
+    width = next(iter(arrays.values())).shape[1]
+    return Table({name: array.ravel() for name, array in arrays.items()}, lambda row: f"{path} at [{row // width}, {row % width}]")

@@ -8,8 +8,8 @@ from groundroll.scenario.material import Density, PSpeed, Quality, SSpeed, slow_
 from groundroll.scenario.parts import Within
 
 from .columns import MATERIAL, QUALITY
-from .csv_files import Column, Table
 from .fill import Filling
+from .tables import Column, Table, fix_of
 
 QUANTITIES = {"vp": PSpeed, "vs": SSpeed, "density": Density, "qp": Quality, "qs": Quality}
 
@@ -40,4 +40,4 @@ def check_bulk(table: Table, material: dict[str, np.ndarray]) -> None:
     vp, vs = material["vp"], material["vs"]
     for row in np.flatnonzero(3.0 * vp**2 <= 4.0 * vs**2)[:1]:
         problem = next(slow_p(float(vp[row]), float(vs[row]), "vp"))
-        table.refuse(row, "vp", problem.what, problem.allowed, problem.fix.replace("{key} = ", ""))
+        table.refuse(int(row), "vp", problem.what, problem.allowed, fix_of(problem.fix))

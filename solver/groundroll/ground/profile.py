@@ -5,12 +5,13 @@ from pathlib import Path
 
 import numpy as np
 
-from .columns import MATERIAL
-from .csv_files import Column, Table, read_columns
+from .columns import MATERIAL, QUALITY
+from .csv_files import read_columns
 from .fill import Filling
 from .material_columns import as_material, check_bulk, material_columns
 from .lines import Line
 from .strata import Stratum
+from .tables import Column, Table
 
 
 def strata_of_profile(path: Path, filling: Filling) -> list[Stratum]:
@@ -36,7 +37,7 @@ def strata_of_profile(path: Path, filling: Filling) -> list[Stratum]:
 
 def _values(table: Table, row: int) -> dict[str, float | None]:
     values = {name: None if table.get(name) is None else float(table[name][row]) for name in MATERIAL}
-    return {name: np.inf if value is None and name in ("qp", "qs") else value for name, value in values.items()}
+    return {name: np.inf if value is None and name in QUALITY else value for name, value in values.items()}
 
 
 def _check_depths(table: Table) -> None:

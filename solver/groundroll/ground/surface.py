@@ -4,7 +4,8 @@ import numpy as np
 
 from groundroll.scenario import Scenario
 
-from .csv_files import Column, read_columns
+from .csv_files import read_columns
+from .tables import Column
 from .terrain import Surface, bell, flat, through_points
 
 COLUMNS = (Column("x"), Column("elevation"))
@@ -21,7 +22,7 @@ def surface_of(scenario: Scenario, radius: float) -> Surface:
     if terrain.points is not None:
         x, elevation = zip(*terrain.points, strict=True)
     else:
-        table = read_columns(scenario.folder / terrain.file, COLUMNS)
+        table = read_columns(scenario.folder / terrain.file, COLUMNS, rows_needed=2)
         table.must_rise("x")
         x, elevation = table["x"], table["elevation"]
     return through_points(np.array(x, dtype=float), np.array(elevation, dtype=float), length, radius)

@@ -93,10 +93,14 @@ def bell(centre: float, height: float, half_width: float, length: float, radius:
     """
     inside = through_points(np.array([0.0, length]), np.array([0.0, length]), length, radius)
 
-    def phase(x):
-        return np.pi * np.clip((inside.elevation(x) - centre) / half_width, -1.0, 1.0)
+    def share(x):
+        return np.clip((inside.elevation(x) - centre) / half_width, -1.0, 1.0)
+
+    def elevation(x):
+        return 0.5 * height * (1.0 + np.cos(np.pi * share(x)))
 
     def slope(x):
-        return -0.5 * height * np.pi / half_width * np.sin(phase(x)) * inside.slope(x)
+        steep = -0.5 * height * np.pi / half_width * np.sin(np.pi * share(x)) * inside.slope(x)
+        return np.where(np.abs(share(x)) < 1.0, steep, 0.0)
 
-    return Surface(lambda x: 0.5 * height * (1.0 + np.cos(phase(x))), slope, max(height, 0.0))
+    return Surface(elevation, slope, max(height, 0.0))

@@ -1,20 +1,22 @@
 """The ground sampled onto the staggered positions of a mesh, absorbing layers included.
 
-Each property is averaged over the rectangle around its own position, so an interface may lie anywhere
-between nodes: density arithmetically at the velocity points, shear modulus harmonically at sxz, stiffness
-by the orthorhombic effective medium at the nodes. Absorbing layers continue the section's outermost cells.
+Each property is averaged over the cell around its own position, so an interface may lie anywhere between
+nodes: density arithmetically at the velocity points, shear modulus harmonically at sxz, stiffness by the
+orthorhombic effective medium at the nodes. Absorbing layers continue the section's outermost cells.
 """
 
 import numpy as np
 
-from groundroll.ground.averaging import effective
+from groundroll.ground.averaging import Shear, Stiffness, effective
 from groundroll.ground.model import GroundModel
+from groundroll.running.losses import LossModel
 from groundroll.waves.assembly import Properties
+from groundroll.waves.attenuation import Loss
 from groundroll.waves.mesh import Mesh
 
 
 def row_bounds(mesh: Mesh) -> tuple[np.ndarray, np.ndarray]:
-    """Return depths (section rows + 1,) bounding the cells of node rows and of half rows.
+    """Return level depths (section rows + 1,) bounding the cells of node rows and of half rows.
 
     A node row on a free or rigid edge has half a cell.
     """
@@ -27,29 +29,79 @@ def row_bounds(mesh: Mesh) -> tuple[np.ndarray, np.ndarray]:
     return node_bounds, np.concatenate([node, [below]])
 
 
-def _extended(values: np.ndarray, mesh: Mesh) -> np.ndarray:
+def z_bounds(mesh: Mesh, level: np.ndarray, half_column: bool) -> np.ndarray:
+    """Return z (rows + 1, columns or 1) of level depths on the mapped mesh, in the section's columns."""
+    if mesh.terrain is None:
+        return level[:, None]
+    shift = mesh.terrain.shift[int(half_column)][mesh.section_columns]
+    return mesh.datum + level[:, None] + shift[None, :] * mesh.terrain.blend_at(level)[:, None]
+
+
+def extended(values: np.ndarray, mesh: Mesh) -> np.ndarray:
     """Continue section values (rows, columns or 1) into the absorbing layers; one column stays one column."""
     left, right, top, bottom = mesh.absorbing
     sides = (left, right) if values.shape[1] > 1 else (0, 0)
     return np.pad(values, ((top, bottom), sides), mode="edge")
 
 
-def sample(model: GroundModel, mesh: Mesh) -> Properties:
-    """Return the effective properties on `mesh`, (nz, nx), or (nz, 1) where all columns are alike."""
-    node_x, half_x = mesh.x_node[mesh.section_columns], mesh.x_half[mesh.section_columns]
-    node_rows, half_rows = (bounds[:, None] for bounds in row_bounds(mesh))
-    h = mesh.spacing
+class Sampler:
+    """Averages of a ground over the cells of a mesh."""
 
-    def mean(x, bounds, kind):
-        return effective(model, x, h, bounds, kind)
+    def __init__(self, model: GroundModel, mesh: Mesh):
+        self._model, self._mesh = model, mesh
+        self._levels = row_bounds(mesh)
 
-    stiffness = mean(node_x, node_rows, "stiffness")
-    shear = mean(half_x, half_rows, "shear")
-    return Properties(
-        density_x=_extended(mean(half_x, node_rows, "density"), mesh),
-        density_z=_extended(mean(node_x, half_rows, "density"), mesh),
-        c11=_extended(stiffness.c11, mesh),
-        c13=_extended(stiffness.c13, mesh),
-        c33=_extended(stiffness.c33, mesh),
-        shear=_extended(shear.shear, mesh),
+    def mean(self, kind: str, half_column: bool, half_row: bool):
+        """Return the average `kind` of `averaging.effective` at one kind of position, absorbing layers included."""
+        mesh = self._mesh
+        x = (mesh.x_half if half_column else mesh.x_node)[mesh.section_columns]
+        x = np.clip(x, mesh.x_node[mesh.section_columns][0], mesh.x_node[mesh.section_columns][-1])
+        bounds = z_bounds(mesh, self._levels[int(half_row)], half_column)
+        found = effective(self._model, x, mesh.spacing, bounds, kind)
+        if isinstance(found, np.ndarray):
+            return extended(found, mesh)
+        return type(found)(*(extended(v, mesh) for v in found))
+
+
+def sample(model: GroundModel, mesh: Mesh, losses: LossModel | None) -> tuple[Properties, Loss | None]:
+    """Return the effective properties on `mesh` and its losses, (nz, nx), or (nz, 1) where all columns are alike.
+
+    With losses the moduli are the unrelaxed ones.
+    """
+    sampler = Sampler(model, mesh)
+    density_x, density_z = sampler.mean("density", True, False), sampler.mean("density", False, True)
+    stiffness, shear = sampler.mean("stiffness", False, False), sampler.mean("shear", True, True)
+    loss = None
+    if losses is not None:
+        loss = loss_on_mesh(mesh, losses, stiffness, shear)
+        stiffness, shear = unrelaxed(losses, stiffness, shear)
+    properties = Properties(density_x, density_z, stiffness.c11, stiffness.c13, stiffness.c33, shear.shear)
+    return properties, loss
+
+
+def unrelaxed(losses: LossModel, stiffness: Stiffness, shear: Shear) -> tuple[Stiffness, Shear]:
+    """Scale moduli meant at the reference frequency to infinite frequency: M by its own factor, c11 - c13 = 2 mu by its own."""
+    p, s = losses.unrelaxed(stiffness.inverse_qp), losses.unrelaxed(stiffness.inverse_qs)
+    coupling = stiffness.c11 * p - (stiffness.c11 - stiffness.c13) * s
+    scaled = stiffness._replace(c11=stiffness.c11 * p, c13=coupling, c33=stiffness.c33 * p)
+    return scaled, shear._replace(shear=shear.shear * losses.unrelaxed(shear.inverse_qs))
+
+
+def loss_on_mesh(mesh: Mesh, losses: LossModel, stiffness: Stiffness, shear: Shear) -> Loss:
+    """Return the coefficients of both shapes.
+
+    On the row of a free surface the stiffness is that of a plate, E = 4 mu (1 - mu/M), so its loss is
+    [4 mu (1 - 2 mu/M)/Qs + 4 (mu^2/M)/Qp]/E, taken alike for P and S there.
+    """
+    inverse_p, inverse_s = np.array(stiffness.inverse_qp), np.array(stiffness.inverse_qs)
+    if mesh.edges[2] == "free":
+        mu, m = 0.5 * (stiffness.c11[0] - stiffness.c13[0]), stiffness.c11[0]
+        plate = 4.0 * mu * (1.0 - mu / m)
+        inverse_p[0] = inverse_s[0] = (4.0 * mu * (1.0 - 2.0 * mu / m) * inverse_s[0] + 4.0 * mu**2 / m * inverse_p[0]) / plate
+    return Loss(
+        omega=losses.omega,
+        shapes=losses.shapes,
+        p_node=losses.coefficients(inverse_p),
+        s_node=losses.coefficients(inverse_s),
+        s_corner=losses.coefficients(shear.inverse_qs),
     )

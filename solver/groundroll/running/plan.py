@@ -12,10 +12,11 @@ from groundroll.errors import InputError
 from groundroll.ground.model import GroundModel, build_ground
 from groundroll.running import choices, machine
 from groundroll.running.choices import Choice
+from groundroll.running.losses import LossModel, fastest_unrelaxed, loss_model
 from groundroll.running.pulses_of import pulse_function, resolved_delay
 from groundroll.scenario import Scenario
 from groundroll.waves import absorbing
-from groundroll.waves.mesh import Mesh, even_mesh
+from groundroll.waves.mesh import Mesh, even_mesh, with_terrain
 from groundroll.waves.simulation import Clock, clock
 
 # Flat arrays a run holds: five fields and six properties.
@@ -27,7 +28,8 @@ class Plan:
     """What a run will do; `print(plan)` shows it.
 
     `scenario` has every default spelled out; `model` is its ground; `mesh`, `clock`, `choice` are as in
-    their own modules; `memory` and `disk` in bytes, `seconds` the expected time of stepping.
+    their own modules; `losses` its attenuation or None, `fastest` its fastest wave (m/s); `memory` and `disk` in bytes, `seconds`
+    the expected time of stepping.
     """
 
     scenario: Scenario
@@ -36,6 +38,8 @@ class Plan:
     clock: Clock
     choice: Choice
     pulses: list = field(repr=False)
+    losses: LossModel | None
+    fastest: float
     memory: float
     disk: float
     seconds: float
@@ -58,6 +62,8 @@ def plan(scenario: Scenario, threads: int | None = None) -> Plan:
     model = build_ground(scenario, choices.provisional_spacing(scenario))
     choice = choices.choose_spacing(scenario, model)
     model = build_ground(scenario, choice.spacing)
+    losses = loss_model(scenario, model)
+    fastest = fastest_unrelaxed(scenario, model, losses)
     edges = scenario.mesh.edges
     mesh = even_mesh(
         choice.spacing,
@@ -66,7 +72,9 @@ def plan(scenario: Scenario, threads: int | None = None) -> Plan:
         (edges.left, edges.right, edges.top, edges.bottom),
         absorbing.CELLS,
     )
-    dt = choices.time_step(choice.spacing, model.fastest_p)
+    if scenario.ground.terrain is not None:
+        mesh = with_terrain(mesh, model.surface_elevation, model.surface_slope)
+    dt = choices.time_step(mesh, fastest)
     time = clock(scenario.section.duration, dt, scenario.section.highest_frequency, pulses)
     resolved = resolve(scenario, choice.spacing)
     made = Plan(
@@ -76,6 +84,8 @@ def plan(scenario: Scenario, threads: int | None = None) -> Plan:
         clock=time,
         choice=choice,
         pulses=pulses,
+        losses=losses,
+        fastest=fastest,
         memory=memory(scenario, mesh, time),
         disk=disk(resolved, mesh),
         seconds=mesh.cells * time.steps / machine.expected_rate(threads),
@@ -178,6 +188,7 @@ def plan_text(made: Plan) -> str:
         ("spacing", f"{choice.spacing:.4g} m ({choice.points_per_wavelength:.1f} points per shortest wavelength)"),
         ("mesh", f"{mesh.nx} x {mesh.nz} = {mesh.cells / 1e6:.2f} million cells, absorbing layers included"),
         ("time step", f"{time.dt:.4g} s, {time.steps} steps for {time.duration:g} s"),
+        *attenuation_rows(made),
         ("precision", made.scenario.mesh.precision),
         ("memory", size_text(made.memory)),
         ("disk", f"at most {size_text(made.disk)}"),
@@ -186,6 +197,15 @@ def plan_text(made: Plan) -> str:
     ]
     lines = [f"{key:<16}{value}" for key, value in rows]
     return "\n".join(lines + [f"warning: {text}" for text in made.warnings])
+
+
+def attenuation_rows(made: Plan) -> list[tuple[str, str]]:
+    if made.losses is None:
+        return []
+    low, high = made.losses.low, made.losses.high
+    worst = max(made.losses.worst_fit(q) for q in (10.0, 30.0, 100.0))
+    text = f"Q constant within {100 * worst:.1f} % from {low:.3g} to {high:.3g} Hz; speeds meant at {made.losses.reference:.3g} Hz"
+    return [("attenuation", text)]
 
 
 def size_text(size: float) -> str:

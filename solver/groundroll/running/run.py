@@ -11,6 +11,7 @@ import numpy as np
 from groundroll.errors import Interrupted, StorageError
 from groundroll.records import Records, RecordsWriter, SnapshotFrame
 from groundroll.running import choices, machine, scene
+from groundroll.running.error_law import PEAK_TO_HIGHEST
 from groundroll.running.ground_on_mesh import sample
 from groundroll.running.observers import Seismograms, Snapshots, Totals
 from groundroll.running.plan import Plan, plan, room_for
@@ -97,10 +98,10 @@ def point_sources(made: Plan) -> list[PointSource]:
 def set_up(made: Plan, lines, threads: int) -> Simulation:
     """Sample the ground and place everything on the mesh."""
     points = [(x, depth) for line in lines for x, depth in zip(line.x, line.depth, strict=True)]
-    damping = EdgeDamping(made.model.fastest_p, np.pi * made.scenario.section.highest_frequency / 2.4)
-    return Simulation(
-        made.mesh, sample(made.model, made.mesh), damping, made.clock, point_sources(made), points, made.dtype, threads=threads
-    )
+    damping = EdgeDamping(made.fastest, np.pi * made.scenario.section.highest_frequency / PEAK_TO_HIGHEST)
+    properties, loss = sample(made.model, made.mesh, made.losses)
+    sources = point_sources(made)
+    return Simulation(made.mesh, properties, damping, made.clock, sources, points, made.dtype, threads=threads, loss=loss)
 
 
 def compute(made: Plan, lines, frame, writer: RecordsWriter, threads: int, quiet: bool) -> dict:

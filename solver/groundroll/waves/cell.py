@@ -36,3 +36,5 @@ INTERIOR = (75.0 / 64.0, -25.0 / 384.0, 3.0 / 640.0)
 REACH, TERRAIN_REACH = 3, 4
 # Rows per band: the row kernels advance two rows at once, which shares loads between them.
 BAND = 2
+# Rows of scratch that the general kernels work in.
+SCRATCH_ROWS = 7

@@ -9,11 +9,14 @@ kinetic and strain energy at one time would waver. Absorbing cells are left out;
 is that of the springs without the memory variables.
 """
 
+from typing import NamedTuple
+
 import numpy as np
 
-from groundroll.waves.cell import HALF_STRAIN, NODE_STRAIN
+from groundroll.waves.cell import SCRATCH_ROWS
+from groundroll.waves.general_kernels import strain_rates
 from groundroll.waves.jit import kernel
-from groundroll.waves.kernels import derivative_x, derivative_z
+from groundroll.waves.terrain_kernels import stretch
 
 
 @kernel
@@ -33,45 +36,52 @@ def compliance_energy(xx, zz, c11, c13, c33):
 def totals(first, last, a, b, weights, dt_over_h, ground, f, scratch, out):
     """Sum rows first..last-1, columns a..b-1 into out = [momentum x, momentum z, kinetic, strain energy].
 
-    `weights` = (node columns, half columns, node rows, half rows); result per h^2. The material arrays
-    hold dt/(rho h) and stiffness dt/h, hence the factors of dt/h (`dt_over_h`).
+    Result per h^2; the material arrays hold dt/(rho h), under terrain dt/(rho J h), and stiffness dt/h,
+    hence the factors of dt/h (`dt_over_h`).
     """
-    node_x, half_x, node_z, half_z = weights
-    m = ground.material
-    ex, ez, p, q = scratch[0], scratch[1], scratch[2], scratch[3]
+    node_x, half_x = weights.node_column, weights.half_column
+    m, margin = ground.material, ground.frame.margin
+    mapped = ground.terrain.rows > 0
+    ex, ez, g = scratch[0], scratch[1], scratch[2]
     for k in range(first, last):
         base = ground.frame.origin + k * ground.frame.pitch
-        derivative_x(ex, f.vx, base, k, a, b, NODE_STRAIN, ground)
-        derivative_z(ez, f.vz, k, a, b, NODE_STRAIN, ground)
-        derivative_x(p, f.vz, base, k, a, b, HALF_STRAIN, ground)
-        derivative_z(q, f.vx, k, a, b, HALF_STRAIN, ground)
+        strain_rates(k, a, b, ground, f, scratch)
         for i in range(a, b):
             at = base + i
             if m.bx[at] > 0.0:
-                w = half_x[i] * node_z[k] * dt_over_h / np.float64(m.bx[at])
+                w = half_x[i] * weights.node_row[k] * dt_over_h / np.float64(m.bx[at])
                 out[0] += w * f.vx[at]
                 out[2] += 0.5 * w * np.float64(f.vx[at]) ** 2
             if m.bz[at] > 0.0:
-                w = node_x[i] * half_z[k] * dt_over_h / np.float64(m.bz[at])
+                w = node_x[i] * weights.half_row[k] * dt_over_h / np.float64(m.bz[at])
                 out[1] += w * f.vz[at]
                 out[2] += 0.5 * w * np.float64(f.vz[at]) ** 2
             xx, zz, xz = np.float64(f.sxx[at]), np.float64(f.szz[at]), np.float64(f.sxz[at])
             c11, c13, c33, mu = np.float64(m.c11[at]), np.float64(m.c13[at]), np.float64(m.c33[at]), np.float64(m.mu[at])
+            w = node_x[i] * weights.node_row[k] * (stretch(ground.terrain, k, i + margin, 0, 0) if mapped else 1.0)
             # A stress held at zero on a free edge stores nothing, even where a source has prescribed it.
             work = (xx * ex[i] if c11 > 0.0 else 0.0) + (zz * ez[i] if c33 > 0.0 else 0.0)
-            out[3] += 0.5 * node_x[i] * node_z[k] * dt_over_h * (compliance_energy(xx, zz, c11, c13, c33) - work)
+            out[3] += 0.5 * w * dt_over_h * (compliance_energy(xx, zz, c11, c13, c33) - work)
             if mu > 0.0:
-                out[3] += 0.5 * half_x[i] * half_z[k] * dt_over_h * (xz * xz / mu - xz * (p[i] + q[i]))
+                w = half_x[i] * weights.half_row[k] * (stretch(ground.terrain, k, i + margin, 1, 1) if mapped else 1.0)
+                out[3] += 0.5 * w * dt_over_h * (xz * xz / mu - xz * g[i])
 
 
-def weights(mesh):
-    """Return (node columns, half columns, node rows, half rows): quadrature weights H, along z times J."""
-    return (
-        mesh.columns.node_norm,
-        mesh.columns.half_norm,
-        mesh.rows.node_norm * mesh.stretch_node,
-        mesh.rows.half_norm * mesh.stretch_half,
-    )
+class Weights(NamedTuple):
+    """Quadrature weights H along x and z; on a level mesh those along z hold J, under terrain J varies along x
+    and is put in by the kernel, except in the masses, which hold it already."""
+
+    node_column: np.ndarray
+    half_column: np.ndarray
+    node_row: np.ndarray
+    half_row: np.ndarray
+
+
+def quadrature(mesh) -> Weights:
+    node, half = mesh.rows.node_norm, mesh.rows.half_norm
+    if mesh.terrain is None:
+        node, half = node * mesh.stretch_node, half * mesh.stretch_half
+    return Weights(mesh.columns.node_norm, mesh.columns.half_norm, node, half)
 
 
 class Ledger:
@@ -79,8 +89,8 @@ class Ledger:
 
     def __init__(self, mesh, march, dt: float):
         self._mesh, self._march, self._dt = mesh, march, dt
-        self._weights = weights(mesh)
-        self._scratch = np.zeros((4, mesh.pitch), dtype=march.fields.vx.dtype)
+        self._weights = quadrature(mesh)
+        self._scratch = np.zeros((SCRATCH_ROWS, mesh.pitch), dtype=march.fields.vx.dtype)
         self.steps: list[int] = []
         self.values: list[np.ndarray] = []
 

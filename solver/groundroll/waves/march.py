@@ -5,12 +5,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from groundroll.waves.cell import REACH, TERRAIN_REACH
+from groundroll.waves.cell import REACH, SCRATCH_ROWS, TERRAIN_REACH
 from groundroll.waves.marching import plain_pass, strip_pass
 from groundroll.waves.points import Receivers, Sources
 from groundroll.waves.state import Fields, Ground
-
-SCRATCH_ROWS = 7
 
 
 @dataclass(frozen=True)

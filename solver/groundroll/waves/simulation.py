@@ -11,6 +11,7 @@ import numpy as np
 
 from groundroll.waves import dispersion
 from groundroll.waves.assembly import EdgeDamping, Properties, assemble
+from groundroll.waves.attenuation import Loss
 from groundroll.waves.march import March, Order
 from groundroll.waves.mesh import Mesh
 from groundroll.waves.placement import SIX, Entries, add_force, add_moment, injection, on_surface, receivers
@@ -78,11 +79,12 @@ class Simulation:
         dtype=np.float32,
         order: Order = Order(),
         threads: int = 1,
+        loss: Loss | None = None,
     ):
         self.mesh, self.clock, self.properties = mesh, time, properties
         self.longest_pass = max(order.steps, 1)
         self._sources, self._series = sources, predistorted(sources, time)
-        ground = assemble(mesh, properties, time.dt, damping, dtype)
+        ground = assemble(mesh, properties, time.dt, damping, dtype, loss)
         self.march = March(
             mesh,
             ground,

@@ -44,6 +44,10 @@ class Relief:
     bend: np.ndarray
     rise: np.ndarray
 
+    def blend_at(self, level: np.ndarray) -> np.ndarray:
+        """Return the blend at level depths (m)."""
+        return blend(level / self.depth)
+
     def stretch(self, half_row: bool, half_column: bool) -> np.ndarray:
         """Return J (nz, nx) at the given kind of position."""
         row, column = int(half_row), int(half_column)
