@@ -68,7 +68,7 @@ def _datasets(path: Path, names: tuple[str, ...]) -> dict[str, np.ndarray]:
     """The datasets of these names at the root of the file, as float64."""
     example = f"an HDF5 file with datasets {', '.join(names)}"
     if not path.is_file():
-        raise InputError(f"{path}: no such file; allowed {example}; correct the file's name")
+        raise InputError(f"{path}: no such file; allowed {example}; correct its name in the scenario")
     try:
         with h5py.File(path, "r") as file:
             there = {name: file[name] for name in names if isinstance(file.get(name), h5py.Dataset)}

@@ -64,7 +64,7 @@ def standard_field(random: RandomGround, length: float, top: float, bottom: floa
     grid would be too large.
     """
     extent, lengths = (length, bottom - top), (random.length_x, random.length_z)
-    per_length = _points_per_length(extent, lengths)
+    per_length = points_per_length(extent, lengths)
     steps = [a / per_length for a in lengths]
     used = [math.ceil(e / step) + 1 for e, step in zip(extent, steps)]
     whole = [next_fast_len(n + math.ceil(MARGIN * per_length)) for n in used]
@@ -79,7 +79,7 @@ def standard_field(random: RandomGround, length: float, top: float, bottom: floa
     return Field(steps[0] * np.arange(used[0]), top + steps[1] * np.arange(used[1]), values)
 
 
-def _points_per_length(extent: tuple[float, float], lengths: tuple[float, float]) -> float:
+def points_per_length(extent: tuple[float, float], lengths: tuple[float, float]) -> float:
     """Grid points per correlation length: as many as are wanted, fewer where the grid would be too large."""
     spans = [e / a + MARGIN for e, a in zip(extent, lengths)]
     affordable = math.sqrt(MOST_POINTS / math.prod(spans))

@@ -33,6 +33,13 @@ def cache_folder() -> Path:
 numba.config.CACHE_DIR = str(cache_folder())
 
 # `contract` lets a multiply and an add become one instruction. No reordering of sums is allowed:
-# the marching orders must give the same bits.
-kernel = numba.njit(cache=True, nogil=True, fastmath={"contract"}, error_model="numpy")
-inline = numba.njit(inline="always", nogil=True, fastmath={"contract"}, error_model="numpy")
+# the marching orders must give the same bits. Without reference counts (`_nrt`) a group of arrays costs
+# nothing to hand on; kernels allocate nothing anyway.
+_OPTIONS = {"nogil": True, "fastmath": {"contract"}, "error_model": "numpy", "_nrt": False}
+
+# A whole pass: what Python calls.
+entry = numba.njit(cache=True, **_OPTIONS)
+# A part of it, compiled into its caller: groups of arrays are then never copied onto the stack.
+kernel = numba.njit(cache=True, forceinline=True, **_OPTIONS)
+# An expression, inlined before types are known, so that the loop around it vectorises.
+inline = numba.njit(inline="always", **_OPTIONS)

@@ -86,10 +86,11 @@ def velocity_band(band, a, b, ground, f, scratch):
         zn, zh = rows.node[k : k + TWO], rows.half[k : k + TWO]
         fast_velocity(at + left, at + right, pitch, ground.columns.c, zn, zh, f, m.bx, m.bz)
     for row in range(k, min(k + TWO, rows.count)):
-        if a < left:
-            general_velocity(row, a, left, ground, f, scratch)
-        if right < b:
-            general_velocity(row, right, b, ground, f, scratch)
+        begin, end = a, left
+        for _ in range(2):
+            if begin < end:
+                general_velocity(row, begin, end, ground, f, scratch)
+            begin, end = right, b
 
 
 @kernel
@@ -104,10 +105,11 @@ def stress_band(band, a, b, ground, f, scratch):
         c33 = m.c11 if m.even[band] else m.c33
         fast_stress(at + left, at + right, pitch, ground.columns.c, zn, zh, f, m.c11, m.c13, c33, m.mu)
     for row in range(k, min(k + TWO, rows.count)):
-        if a < left:
-            general_stress(row, a, left, ground, f, scratch)
-        if right < b:
-            general_stress(row, right, b, ground, f, scratch)
+        begin, end = a, left
+        for _ in range(2):
+            if begin < end:
+                general_stress(row, begin, end, ground, f, scratch)
+            begin, end = right, b
 
 
 @kernel

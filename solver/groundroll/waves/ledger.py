@@ -15,7 +15,7 @@ import numpy as np
 
 from groundroll.waves.cell import SCRATCH_ROWS
 from groundroll.waves.general_kernels import strain_rates
-from groundroll.waves.jit import kernel
+from groundroll.waves.jit import entry, kernel
 from groundroll.waves.terrain_kernels import stretch
 
 
@@ -32,7 +32,7 @@ def compliance_energy(xx, zz, c11, c13, c33):
     return 0.0
 
 
-@kernel
+@entry
 def totals(first, last, a, b, weights, dt_over_h, ground, f, scratch, out):
     """Sum rows first..last-1, columns a..b-1 into out = [momentum x, momentum z, kinetic, strain energy].
 

@@ -16,7 +16,7 @@ class Order:
     """How a pass visits the mesh: `steps` per pass, `strip` columns wide; None for the plain order."""
 
     steps: int = 8
-    strip: int | None = 768
+    strip: int | None = 3000
 
 
 PLAIN = Order(steps=1, strip=None)

@@ -18,7 +18,7 @@ bands that any row reads up or down, closures included (`assembly.reach_in_bands
 
 import numpy as np
 
-from groundroll.waves.jit import kernel
+from groundroll.waves.jit import entry, kernel
 from groundroll.waves.kernels import force_band, strain_band, stress_band, velocity_band
 from groundroll.waves.points import add_sources, note_receivers
 
@@ -47,7 +47,7 @@ def stage(number, first_step, band, a, b, ground, fields, sources, receivers, sc
         add_sources(band, a, b, first_step + step, ground.frame, fields, sources.moment)
 
 
-@kernel
+@entry
 def plain_pass(first_step, steps, width, bands, ground, fields, sources, receivers, scratch):
     """Advance `steps` steps, each stage over all bands before the next stage begins."""
     a, b = np.uint64(0), np.uint64(width)
@@ -56,7 +56,7 @@ def plain_pass(first_step, steps, width, bands, ground, fields, sources, receive
             stage(number, first_step, np.uint64(band), a, b, ground, fields, sources, receivers, scratch)
 
 
-@kernel
+@entry
 def strip_pass(bounds, slopes, first_step, steps, bands, ground, fields, sources, receivers, scratch):
     """Advance `steps` steps inside each strip in turn.
 
