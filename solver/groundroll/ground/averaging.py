@@ -99,7 +99,7 @@ class _SubColumns:
         return self.model.columns(x), edges
 
     def means(self, columns: Columns, edges: np.ndarray, *fields: np.ndarray):
-        """Vertical means of fields (m, n): arrays (cells, samples, nz), and whether each cell is of one piece."""
+        """Vertical means of fields (m, n): (f, cells, samples, nz), and the first and last piece met, each (cells, samples, nz)."""
         values = np.ascontiguousarray(np.stack(fields))
         means, first, last = column_means(columns.surface, columns.top, values, edges)
         shape = (-1, self.samples, len(self.edges) - 1)
@@ -148,7 +148,7 @@ def _shear(places: _SubColumns, begin: int, end: int) -> tuple[np.ndarray, np.nd
 def _of_one_piece(first: np.ndarray, last: np.ndarray, *fields: np.ndarray) -> tuple[list[np.ndarray], np.ndarray]:
     """Each field in the piece of each cell's first sub-column (cells, nz), and where a cell knows one value only.
 
-    `first`, `last` (cells, samples, nz) are the least and greatest piece met; fields (cells x samples, n).
+    `first`, `last` (cells, samples, nz) are the first and last piece met; fields (cells x samples, n).
     """
     single = (first == last).all(axis=1)
     values = []

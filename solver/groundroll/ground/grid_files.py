@@ -85,7 +85,8 @@ def _check_axis(path: Path, name: str, axis: np.ndarray | None) -> None:
     if axis is None:
         refuse(str(path), name, "missing", "nothing", allowed, f"add a dataset {name}")
     if axis.ndim != 1 or not axis.size:
-        refuse(str(path), name, "not a row of numbers", f"shape {axis.shape}", allowed, f"write {name} as a one-dimensional dataset")
+        fix = f"write {name} as a one-dimensional dataset"
+        refuse(str(path), name, "not a row of numbers", f"shape {axis.shape}", allowed, fix)
     if not np.isfinite(axis).all():
         refuse(str(path), name, "not finite everywhere", "nan or inf", allowed, "correct it")
     for item in np.flatnonzero(np.diff(axis) <= 0.0)[:1]:
@@ -111,4 +112,5 @@ def _check_array(path: Path, column: Column, array: np.ndarray | None, shape: tu
 def _flat_table(path: Path, arrays: dict[str, np.ndarray]) -> Table:
     """The arrays as a table whose rows are told by their indices."""
     width = next(iter(arrays.values())).shape[1]
-    return Table({name: array.ravel() for name, array in arrays.items()}, lambda row: f"{path} at [{row // width}, {row % width}]")
+    values = {name: array.ravel() for name, array in arrays.items()}
+    return Table(values, lambda row: f"{path} at [{row // width}, {row % width}]")

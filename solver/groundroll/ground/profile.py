@@ -8,8 +8,8 @@ import numpy as np
 from .columns import MATERIAL, QUALITY
 from .csv_files import read_columns
 from .fill import Filling
-from .material_columns import as_material, check_bulk, material_columns
 from .lines import Line
+from .material_columns import as_material, check_bulk, material_columns
 from .strata import Stratum
 from .tables import Column, Table
 

@@ -39,11 +39,16 @@ def correlation(random: RandomGround, r: np.ndarray) -> np.ndarray:
 
 @dataclass(frozen=True)
 class Field:
-    """Values (nz, nx) at `depth` (nz,) and `x` (nx,), m; bilinear between, level beyond."""
+    """Values (nz, nx) of variance 1 at `depth` (nz,) and `x` (nx,), m; level beyond.
+
+    Between its points the bilinear mean of the four about a place is divided by its standard deviation, which
+    follows from the correlations `neighbours` of points one step apart along x, along depth and along both.
+    """
 
     x: np.ndarray
     depth: np.ndarray
     values: np.ndarray
+    neighbours: tuple[float, float, float]
 
     def at(self, x: np.ndarray, depth: np.ndarray) -> np.ndarray:
         """The field at x (m,) and depth (m, n)."""
@@ -51,7 +56,15 @@ class Field:
         above, below, down = bracket(self.depth, depth)
         upper = self.values[above, left] * (1.0 - along) + self.values[above, right] * along
         lower = self.values[below, left] * (1.0 - along) + self.values[below, right] * along
-        return upper * (1.0 - down) + lower * down
+        return (upper * (1.0 - down) + lower * down) / np.sqrt(self._variance(along, down))
+
+    def _variance(self, along: np.ndarray, down: np.ndarray) -> np.ndarray:
+        """Variance of the bilinear mean: sum of w_i w_j C_ij over the four points."""
+        cross_x, cross_z = 2.0 * along * (1.0 - along), 2.0 * down * (1.0 - down)
+        c_x, c_z, c_both = self.neighbours
+        only_x = 1.0 - cross_x * (1.0 - c_x)
+        both = (1.0 - cross_x) * c_z + cross_x * c_both
+        return (1.0 - cross_z) * only_x + cross_z * both
 
 
 @lru_cache(maxsize=2)
@@ -60,8 +73,7 @@ def standard_field(random: RandomGround, length: float, top: float, bottom: floa
 
     White noise of numpy's PCG64 from the seed, filtered by the root of the spectrum of the correlation on a
     periodic grid (Dietrich & Newsam 1997): mean 0, variance 1 and the correlation exact at the grid's points but
-    for its wrapping, below exp(-8). Between them bilinear interpolation lessens the variance. InputError if the
-    grid would be too large.
+    for its wrapping, below exp(-8). InputError if the grid would be too large.
     """
     extent, lengths = (length, bottom - top), (random.length_x, random.length_z)
     per_length = points_per_length(extent, lengths)
@@ -76,7 +88,8 @@ def standard_field(random: RandomGround, length: float, top: float, bottom: floa
     filtered = np.fft.rfft2(noise) * np.sqrt(np.maximum(spectrum, 0.0))
     values = np.fft.irfft2(filtered, s=shape)[: used[1], : used[0]].copy()
     values.flags.writeable = False
-    return Field(steps[0] * np.arange(used[0]), top + steps[1] * np.arange(used[1]), values)
+    neighbours = correlation(random, np.array([1.0, 1.0, math.sqrt(2.0)]) / per_length)
+    return Field(steps[0] * np.arange(used[0]), top + steps[1] * np.arange(used[1]), values, tuple(neighbours))
 
 
 def points_per_length(extent: tuple[float, float], lengths: tuple[float, float]) -> float:

@@ -24,5 +24,9 @@ def surface_of(scenario: Scenario, radius: float) -> Surface:
     else:
         table = read_columns(scenario.folder / terrain.file, COLUMNS, rows_needed=2)
         table.must_rise("x")
+        for row in np.flatnonzero(table["elevation"] <= -scenario.section.depth)[:1]:
+            what = "the ground surface would lie below the section"
+            allowed = f"above -{scenario.section.depth:g} m (section.depth)"
+            table.refuse(int(row), "elevation", what, allowed, "make section.depth greater")
         x, elevation = table["x"], table["elevation"]
-    return through_points(np.array(x, dtype=float), np.array(elevation, dtype=float), length, radius)
+    return through_points(np.asarray(x, dtype=float), np.asarray(elevation, dtype=float), length, radius)
