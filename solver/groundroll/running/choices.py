@@ -105,3 +105,8 @@ def reference_frequency(scenario: Scenario) -> float | None:
 def provisional_spacing(scenario: Scenario) -> float:
     """Return a spacing good enough to build the ground once and learn its slowest wave."""
     return scenario.mesh.spacing or min(scenario.section.length, scenario.section.depth) / 200.0
+
+
+def surface_wavelength(scenario: Scenario, model: GroundModel) -> float:
+    """Return the dominant Rayleigh wavelength (m) of the slowest ground, c about 0.92 Vs."""
+    return 0.92 * model.slowest_shear * PEAK_TO_HIGHEST / scenario.section.highest_frequency

@@ -12,13 +12,16 @@ from groundroll.errors import InputError
 from groundroll.ground.model import GroundModel, build_ground
 from groundroll.running import choices, machine
 from groundroll.running.choices import Choice
+from groundroll.running.grading import grade
 from groundroll.running.losses import LossModel, fastest_unrelaxed, loss_model
 from groundroll.running.pulses_of import pulse_function, resolved_delay
 from groundroll.scenario import Scenario
 from groundroll.waves import absorbing
-from groundroll.waves.mesh import Mesh, even_mesh, with_terrain
+from groundroll.waves.mesh import Mesh, even_mesh, with_depths, with_terrain
 from groundroll.waves.simulation import Clock, clock
 
+# A section is at least this many times deeper than the relief of its ground, and no slope steeper than this.
+LEAST_FADE, STEEPEST = 2.0, 1.0
 # Flat arrays a run holds: five fields and six properties.
 ARRAYS = 11
 
@@ -64,16 +67,7 @@ def plan(scenario: Scenario, threads: int | None = None) -> Plan:
     model = build_ground(scenario, choice.spacing)
     losses = loss_model(scenario, model)
     fastest = fastest_unrelaxed(scenario, model, losses)
-    edges = scenario.mesh.edges
-    mesh = even_mesh(
-        choice.spacing,
-        scenario.section.length,
-        scenario.section.depth,
-        (edges.left, edges.right, edges.top, edges.bottom),
-        absorbing.CELLS,
-    )
-    if scenario.ground.terrain is not None:
-        mesh = with_terrain(mesh, model.surface_elevation, model.surface_slope)
+    mesh = make_mesh(scenario, model, choice)
     dt = choices.time_step(mesh, fastest)
     time = clock(scenario.section.duration, dt, scenario.section.highest_frequency, pulses)
     resolved = resolve(scenario, choice.spacing)
@@ -94,6 +88,44 @@ def plan(scenario: Scenario, threads: int | None = None) -> Plan:
     refuse_too_large(made)
     made.warnings.extend(warnings(made))
     return made
+
+
+def make_mesh(scenario: Scenario, model: GroundModel, choice: Choice) -> Mesh:
+    """Return the mesh: even or graded in depth, level or laid under the terrain."""
+    edges, section = scenario.mesh.edges, scenario.section
+    conditions = (edges.left, edges.right, edges.top, edges.bottom)
+    if scenario.mesh.graded:
+        grading = grade(model, choice.spacing, section.depth, choices.surface_wavelength(scenario, model))
+        rows = math.ceil(grading.zeta_at(section.depth) / choice.spacing - 1e-9)
+        mesh = even_mesh(choice.spacing, section.length, rows * choice.spacing, conditions, absorbing.CELLS)
+        mesh = with_depths(mesh, grading.depth_of, grading.stretch_of)
+    else:
+        mesh = even_mesh(choice.spacing, section.length, section.depth, conditions, absorbing.CELLS)
+    if scenario.ground.terrain is None:
+        return mesh
+    refuse_steep_relief(scenario, model)
+    return with_terrain(mesh, model.surface_elevation, model.surface_slope)
+
+
+def refuse_steep_relief(scenario: Scenario, model: GroundModel) -> None:
+    """Refuse terrain that the mesh cannot follow: closed sides, a relief too great for the depth, cliffs."""
+    edges, section = scenario.mesh.edges, scenario.section
+    if edges.top != "free":
+        raise InputError('mesh.edges.top: "absorb" does not go with ground.terrain; allowed: "free"; remove [ground.terrain] or the key')
+    x = np.linspace(0.0, section.length, 2001)
+    heights, slopes = model.surface_elevation(x), np.abs(model.surface_slope(x))
+    relief = float(heights.max() - heights.min())
+    if section.depth < LEAST_FADE * relief:
+        raise InputError(
+            f"section.depth: {section.depth:g} m is too shallow for a relief of {relief:.4g} m; "
+            f"allowed: at least {LEAST_FADE:g} times the relief; write section.depth = {math.ceil(LEAST_FADE * relief):g}"
+        )
+    if slopes.max() > STEEPEST:
+        place = float(x[slopes.argmax()])
+        raise InputError(
+            f"ground.terrain: the slope at x = {place:.4g} m is {np.degrees(np.arctan(slopes.max())):.0f} degrees; "
+            f"allowed: up to {np.degrees(np.arctan(STEEPEST)):.0f} degrees; flatten the terrain there"
+        )
 
 
 def resolve(scenario: Scenario, spacing: float) -> Scenario:
@@ -187,6 +219,7 @@ def plan_text(made: Plan) -> str:
     rows = [
         ("spacing", f"{choice.spacing:.4g} m ({choice.points_per_wavelength:.1f} points per shortest wavelength)"),
         ("mesh", f"{mesh.nx} x {mesh.nz} = {mesh.cells / 1e6:.2f} million cells, absorbing layers included"),
+        *grading_rows(made),
         ("time step", f"{time.dt:.4g} s, {time.steps} steps for {time.duration:g} s"),
         *attenuation_rows(made),
         ("precision", made.scenario.mesh.precision),
@@ -197,6 +230,15 @@ def plan_text(made: Plan) -> str:
     ]
     lines = [f"{key:<16}{value}" for key, value in rows]
     return "\n".join(lines + [f"warning: {text}" for text in made.warnings])
+
+
+def grading_rows(made: Plan) -> list[tuple[str, str]]:
+    if not made.scenario.mesh.graded:
+        return []
+    mesh = made.mesh
+    even = even_mesh(mesh.spacing, made.scenario.section.length, made.scenario.section.depth, mesh.edges, absorbing.CELLS).cells
+    deepest = mesh.spacing * mesh.stretch_node[mesh.section_rows][-1]
+    return [("graded", f"rows grow from {mesh.spacing:.3g} to {deepest:.3g} m; {even / mesh.cells:.1f} times fewer cells than an even mesh")]
 
 
 def attenuation_rows(made: Plan) -> list[tuple[str, str]]:

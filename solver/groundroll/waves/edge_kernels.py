@@ -45,3 +45,20 @@ def absorb_along_z(d, k, a, b, operator, layers):
         psi[i] = rb * psi[i] + ra * d[i]
     for i in range(a, b):
         d[i] += rg * d[i] + psi[i]
+
+
+@kernel
+def fade(f, k, a, b, half_column, half_row, ground):
+    """Multiply a field on row k, columns a..b-1, by the fading of the absorbing columns and rows it lies in."""
+    base = ground.frame.origin + k * ground.frame.pitch
+    sides, layers = ground.sides, ground.layers
+    factor = sides.fade[half_column]
+    for i in range(a, min(b, sides.left)):
+        f[base + i] *= factor[i]
+    for i in range(max(a, sides.right), b):
+        f[base + i] *= factor[i - sides.right + sides.left]
+    r = layers.index[k]
+    if r >= 0:
+        across = layers.fade[half_row, U(r)]
+        for i in range(base + a, base + b):
+            f[i] *= across

@@ -8,7 +8,7 @@ the ends of the mesh.
 import numpy as np
 
 from groundroll.waves.cell import HALF_MOMENTUM, HALF_STRAIN, NODE_MOMENTUM, NODE_STRAIN
-from groundroll.waves.edge_kernels import absorb_along_x, absorb_along_z
+from groundroll.waves.edge_kernels import absorb_along_x, absorb_along_z, fade
 from groundroll.waves.jit import inline, kernel
 from groundroll.waves.memory_kernels import relax_normal, relax_shear
 from groundroll.waves.stencils import ONE, sum_rows, to_half, to_node
@@ -78,6 +78,7 @@ def general_velocity(k, a, b, ground, f, scratch):
         derivative_z(q, f.sxz, k, a, b, NODE_MOMENTUM, ground)
     for i in range(a, b):
         f.vx[base + i] += m.bx[base + i] * (p[i] + q[i])
+    fade(f.vx, k, a, b, 1, 0, ground)
     if k < ground.terrain.rows:
         times_stretch(t, f.sxz, k, a, b, 1, ground)
         derivative_x(p, t, ground.frame.margin, k, a, b, NODE_MOMENTUM, ground)
@@ -87,6 +88,7 @@ def general_velocity(k, a, b, ground, f, scratch):
         derivative_z(q, f.szz, k, a, b, HALF_MOMENTUM, ground)
     for i in range(a, b):
         f.vz[base + i] += m.bz[base + i] * (p[i] + q[i])
+    fade(f.vz, k, a, b, 0, 1, ground)
 
 
 @kernel
@@ -125,3 +127,6 @@ def general_stress(k, a, b, ground, f, scratch):
     if ground.memory.count > 0:
         relax_normal(k, a, b, ground, f, scratch)
         relax_shear(k, a, b, ground, f, scratch)
+    fade(f.sxx, k, a, b, 0, 0, ground)
+    fade(f.szz, k, a, b, 0, 0, ground)
+    fade(f.sxz, k, a, b, 1, 1, ground)

@@ -141,5 +141,5 @@ def with_terrain(mesh: Mesh, elevation, slope) -> Mesh:
     shift = -(heights - middle)
     level = np.stack([mesh.depth_node, mesh.depth_half])
     rise = np.stack([mesh.stretch_node, mesh.stretch_half])
-    mapping = relief(shift, -slope(x.ravel()).reshape(x.shape), level, rise, 2.0 * np.abs(shift).max())
+    mapping = relief(shift, -slope(x.ravel()).reshape(x.shape), level, rise, 2.0 * np.abs(shift).max(), mesh.depth_node[mesh.section_rows][-1])
     return replace(mesh, terrain=mapping, datum=-middle)

@@ -77,8 +77,8 @@ class Frame(NamedTuple):
 class Sides(NamedTuple):
     """Absorbing columns: window entry w is column w below `left`, then column `right` + w - `left`.
 
-    `psi` (4, nz, w): convolution variables of the four x derivatives; `b`, `a`, `g` (2, w): recursion
-    and stretch at node and half columns, see `absorbing.py`."""
+    `psi` (4, nz, w): convolution variables of the four x derivatives; `b`, `a`, `g`, `fade` (2, w):
+    recursion, stretch and fading at node and half columns, see `absorbing.py`."""
 
     left: int
     right: int
@@ -86,17 +86,19 @@ class Sides(NamedTuple):
     b: np.ndarray
     a: np.ndarray
     g: np.ndarray
+    fade: np.ndarray
 
 
 class Layers(NamedTuple):
-    """Absorbing rows: `index[k]` is the entry r of row k in `psi` (4, r, pitch), or -1; `b`, `a`, `g`
-    (2, r) as in `Sides`."""
+    """Absorbing rows: `index[k]` is the entry r of row k in `psi` (4, r, pitch), or -1; `b`, `a`, `g`,
+    `fade` (2, r) as in `Sides`."""
 
     index: np.ndarray
     psi: np.ndarray
     b: np.ndarray
     a: np.ndarray
     g: np.ndarray
+    fade: np.ndarray
 
 
 class Terrain(NamedTuple):

@@ -2,7 +2,8 @@
 
 z(x, zeta) = Z(zeta) + shift(x) blend(Z / H),  blend(u) = (1 - u)^2 (1 + 2 u) for u < 1, else 0 (z down).
 
-blend has no slope at u = 0, so J = Z' on the surface. H is FADE times the relief. On row 0 one number kappa
+blend has no slope at u = 0, so J = Z' on the surface. H is FADE times the relief, or the depth
+of the section if that is less. On row 0 one number kappa
 softens the stiffness of the stress state that violates the traction-free condition: with p = q^2,
 d = (1, p) the direction of a traction-free state (szz = p sxx), C the stiffness of (sxx, szz) and S = C^-1,
 
@@ -68,10 +69,12 @@ def blend_slope(u):
     return -6.0 * u * (1.0 - u)
 
 
-def relief(shift, slope, level, rise, greatest: float) -> Relief:
-    """Build the mapping from `shift`, `slope` (2, nx), the level depths Z and Z' (2, nz), and max |shift|."""
-    depth = FADE * greatest
-    mapped = int(np.searchsorted(level[0], depth)) + 1
+def relief(shift, slope, level, rise, greatest: float, deepest: float) -> Relief:
+    """Build the mapping from `shift`, `slope` (2, nx), the level depths Z and Z' (2, nz), the relief and the
+    depth by which the mesh must be level (m)."""
+    depth = min(FADE * greatest, deepest)
+    # Below the last row with a slope its helpers still carry some of it, as far as the operators reach.
+    mapped = int(np.searchsorted(level[0], depth)) + 1 + TAPS
     return Relief(shift, slope, depth, mapped, blend(level / depth), blend_slope(level / depth) / depth * rise, rise)
 
 
