@@ -88,7 +88,7 @@ class Record:
     simulation: Simulation
 
 
-def shoot(ratio, ppw, source, points, duration, edges=FREE_TOP, pulse=None, margin=4.0, quantity="velocity", below=None):
+def shoot(ratio, ppw, source, points, duration, edges=FREE_TOP, pulse=None, margin=4.0, quantity="velocity"):
     """Run one source in homogeneous ground of Vp/Vs = `ratio` and return the `Record`.
 
     `source` is a PointSource and `points` its receivers (x, depth), x from the source's own; `margin` (Rayleigh
@@ -101,7 +101,7 @@ def shoot(ratio, ppw, source, points, duration, edges=FREE_TOP, pulse=None, marg
     shift = np.round((margin * wavelength - xs.min()) / h) * h + 0.3 * h
     top = 0.0 if edges[2] == "free" else np.round((margin * wavelength - zs.min()) / h) * h
     length = np.ceil((shift + xs.max() + margin * wavelength) / h) * h
-    depth = np.ceil((top + zs.max() + (below or margin) * wavelength) / h) * h
+    depth = np.ceil((top + zs.max() + margin * wavelength) / h) * h
     mesh = even_mesh(h, length, depth, edges, LAYER)
     placed = replace(source, x=shift, depth=top + source.depth, pulse=pulse)
     time = clock(duration, COURANT * h / vp, pulses.RICKER_BAND * FREQUENCY, [pulse])

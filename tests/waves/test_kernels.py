@@ -17,6 +17,8 @@ from groundroll.waves.simulation import PointSource
 from .drive import FREE_TOP, FULL_SPACE, all_steps, interior, ricker, rough
 
 STEPS = 12
+FIELDS = 5
+BELOW = PointSource(30.3, 20.0, ricker(60.0, 0.004), force=(2e5, 1e5))
 FREE_SIDE = ("free", "absorb", "absorb", "rigid")
 
 
@@ -56,7 +58,7 @@ def test_compiled_and_interpreted_agree(edges, order, tmp_path):
     code = (
         "import numpy as np\n"
         "from tests.waves import test_kernels as t\n"
-        f"from groundroll.waves.march import Order\n"
+        "from groundroll.waves.march import Order\n"
         f"np.save({str(file)!r}, t.fields_of({edges!r}, {order!r}))\n"
     )
     here = Path(__file__).parents[2]
@@ -65,12 +67,11 @@ def test_compiled_and_interpreted_agree(edges, order, tmp_path):
     subprocess.run([sys.executable, "-W", "error", "-c", code], check=True, env=environment, cwd=here, timeout=300)
     interpreted, compiled = np.load(file), fields_of(edges, order)
     assert np.abs(compiled).max() > 0.0
-    cells = 5
-    size = (len(compiled) - STEPS * 4) // cells
-    for part in range(cells):
+    size = (len(compiled) - STEPS * 4) // FIELDS
+    for part in range(FIELDS):
         piece = slice(part * size, (part + 1) * size)
         assert_allclose(interpreted[piece], compiled[piece], rtol=1e-12, atol=1e-12 * np.abs(compiled[piece]).max())
-    tail = slice(cells * size, None)
+    tail = slice(FIELDS * size, None)
     assert_allclose(interpreted[tail], compiled[tail], rtol=1e-12, atol=1e-12 * np.abs(compiled[tail]).max())
 
 
@@ -90,7 +91,7 @@ def test_fast_kernels_are_what_ran():
     """Mutation of the test above: with the fast kernels' own coefficients a thousandth off, the two differ."""
     def spoilt(general):
         mesh = even_mesh(1.0, 60.0, 50.0, FREE_TOP, 4)
-        run = all_steps(mesh, rough(mesh, 400.0), 400.0, [PointSource(30.3, 20.0, ricker(60.0, 0.004), force=(2e5, 1e5))], [], 40)
+        run = all_steps(mesh, rough(mesh, 400.0), 400.0, [BELOW], [], 40)
         run.march.ground.rows.node[:] *= 1.001
         if general:
             run.march.ground.rows.plain_velocity[:] = 0
@@ -108,7 +109,7 @@ def test_even_bands_need_no_c33(dtype):
     ends = []
     for even in (True, False):
         mesh = even_mesh(1.0, 60.0, 50.0, FREE_TOP, 4)
-        run = all_steps(mesh, rough(mesh, 400.0), 400.0, [PointSource(30.3, 20.0, ricker(60.0, 0.004), force=(2e5, 1e5))], [], 20, dtype)
+        run = all_steps(mesh, rough(mesh, 400.0), 400.0, [BELOW], [], 20, dtype)
         assert run.march.ground.material.even.any()
         if not even:
             run.march.ground.material.even[:] = 0

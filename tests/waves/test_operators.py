@@ -24,13 +24,6 @@ def _matrix(table, operator):
     return matrix
 
 
-def _held(near, far):
-    """Masks of node and half points that are free to move: a rigid edge holds its node, nothing lies past a closed end."""
-    node, half = np.ones(N), np.ones(N)
-    half[-1] = far == "absorb"
-    return node, half
-
-
 def _all(near, far):
     table = line(N, near, far)
     return table, [_matrix(table, o) for o in (NODE_STRAIN, HALF_STRAIN, NODE_MOMENTUM, HALF_MOMENTUM)]
@@ -65,7 +58,7 @@ def test_a_sloped_edge_needs_no_held_traction():
     assert_allclose(ha * an + (hb * dh).T, 0.0, rtol=0, atol=ROUNDING)
 
 
-def test_interior_alone_breaks_the_identity(monkeypatch):
+def test_interior_alone_breaks_the_identity():
     """Mutation: with unit norms at a free edge the sum does not vanish."""
     table, (dn, *_, ah) = _all("free", "absorb")
     broken = ah + dn.T

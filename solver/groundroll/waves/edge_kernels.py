@@ -1,8 +1,7 @@
 """Corrections of a derivative in absorbing columns and rows; the layer itself is set up in `absorbing.py`.
 
-With the recursion psi <- b psi + a d the absorbing layer replaces a derivative d by d + g d + psi,
-g = 1/kappa - 1 (Roden & Gedney 2000, Microw. Opt. Technol. Lett. 27, 334; Komatitsch & Martin 2007,
-Geophysics 72, SM155).
+With the recursion psi <- b psi + a d the absorbing layer replaces a derivative d by d + psi (Roden & Gedney
+2000, Microw. Opt. Technol. Lett. 27, 334; Komatitsch & Martin 2007, Geophysics 72, SM155).
 """
 
 import numpy as np
@@ -23,14 +22,14 @@ def lies_half(operator):
 def absorb_along_x(d, k, a, b, operator, sides):
     """Correct d[a..b-1] = d_x of a field on row k in the absorbing columns of both sides."""
     psi, half = sides.psi[operator, k], lies_half(operator)
-    rb, ra, rg = sides.b[half], sides.a[half], sides.g[half]
+    rb, ra = sides.b[half], sides.a[half]
     for i in range(a, min(b, sides.left)):
         psi[i] = rb[i] * psi[i] + ra[i] * d[i]
-        d[i] += rg[i] * d[i] + psi[i]
+        d[i] += psi[i]
     for i in range(max(a, sides.right), b):
         w = i - sides.right + sides.left
         psi[w] = rb[w] * psi[w] + ra[w] * d[i]
-        d[i] += rg[w] * d[i] + psi[w]
+        d[i] += psi[w]
 
 
 @kernel
@@ -40,11 +39,11 @@ def absorb_along_z(d, k, a, b, operator, layers):
     if r < 0:
         return
     psi, half = layers.psi[operator, U(r)], lies_half(operator)
-    rb, ra, rg = layers.b[half, U(r)], layers.a[half, U(r)], layers.g[half, U(r)]
+    rb, ra = layers.b[half, U(r)], layers.a[half, U(r)]
     for i in range(a, b):
         psi[i] = rb * psi[i] + ra * d[i]
     for i in range(a, b):
-        d[i] += rg * d[i] + psi[i]
+        d[i] += psi[i]
 
 
 @kernel

@@ -77,27 +77,25 @@ class Frame(NamedTuple):
 class Sides(NamedTuple):
     """Absorbing columns: window entry w is column w below `left`, then column `right` + w - `left`.
 
-    `psi` (4, nz, w): convolution variables of the four x derivatives; `b`, `a`, `g`, `fade` (2, w):
-    recursion, stretch and fading at node and half columns, see `absorbing.py`."""
+    `psi` (4, nz, w): convolution variables of the four x derivatives; `b`, `a`, `fade` (2, w): recursion
+    and fading at node and half columns, see `absorbing.py`."""
 
     left: int
     right: int
     psi: np.ndarray
     b: np.ndarray
     a: np.ndarray
-    g: np.ndarray
     fade: np.ndarray
 
 
 class Layers(NamedTuple):
-    """Absorbing rows: `index[k]` is the entry r of row k in `psi` (4, r, pitch), or -1; `b`, `a`, `g`,
+    """Absorbing rows: `index[k]` is the entry r of row k in `psi` (4, r, pitch), or -1; `b`, `a`,
     `fade` (2, r) as in `Sides`."""
 
     index: np.ndarray
     psi: np.ndarray
     b: np.ndarray
     a: np.ndarray
-    g: np.ndarray
     fade: np.ndarray
 
 
