@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 from numpy.testing import assert_allclose, assert_array_equal
 
-from groundroll.waves import operators, placement, pulses
+from groundroll.waves import absorbing, operators, placement, pulses
 from groundroll.waves.assembly import Properties
 from groundroll.waves.ledger import Ledger
 from groundroll.waves.march import Order
@@ -35,10 +35,11 @@ def _mirrored(mesh, ground):
 
 @pytest.mark.parametrize(
     ("edges", "tolerance"),
-    [(FREE_BOX, 1e-12), (("rigid", "rigid", "free", "absorb"), 1e-12), (FREE_TOP, 2e-6)],
+    [(FREE_BOX, 1e-12), (("rigid", "rigid", "free", "absorb"), 1e-12), (FREE_TOP, 0.02 * absorbing.REFLECTION)],
 )
 def test_mirror(edges, tolerance):
-    """Rounding between closed sides; absorbing layers differ by one half column at their outer end, 1e-6 at most."""
+    """Rounding between closed sides. Absorbing layers differ by half a column at their outer end, whose echo is
+    REFLECTION by design; half a cell shifts its phase by a few hundredths (measured 0.008 of REFLECTION)."""
     mesh = even_mesh(1.0, 40.0, 26.0, edges, 12)
     ground = rough(mesh, VP)
     records = []

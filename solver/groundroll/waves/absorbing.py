@@ -8,7 +8,7 @@ Along one axis, with u the depth into the layer over its thickness (0 at the sec
 (Collino & Tsogka 2001, Geophysics 66, 294, for d0; Roden & Gedney 2000; Komatitsch & Martin 2007).
 
 Guided waves of layered ground may have opposite phase and group velocities, and a layer that damps along
-one axis only lets them grow. So velocity and stress also fade along both axes, as exp(-PARALLEL d0 u^4 dt) a step,
+one axis only lets them grow. So velocity and stress also fade along both axes, as exp(-PARALLEL d0 u^8 dt) a step,
 and (1 - PARALLEL) d stretches the normal axis: the multi-axial layer of Meza-Fajardo & Papageorgiou 2008
 (Bull. Seism. Soc. Am. 98, 1811), written as a fading with a gentler onset so that it reflects less.
 """
@@ -18,10 +18,10 @@ import numpy as np
 from groundroll.waves.state import Layers, Sides
 
 CELLS = 20
-REFLECTION = 1.5e-3
+REFLECTION = 1e-3
 ORDER = 2
-PARALLEL = 0.06
-FADING_ORDER = 4
+PARALLEL = 0.12
+FADING_ORDER = 8
 
 
 def recursion(u, thickness, speed, shift, dt):
