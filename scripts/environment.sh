@@ -27,7 +27,7 @@ explain_missing_python() {
 }
 
 make_environment() {
-    if [ -x .venv/bin/python ] && new_enough .venv/bin/python; then
+    if new_enough .venv/bin/python && .venv/bin/python -c 'import pip' >/dev/null 2>&1; then
         return
     fi
     local python
@@ -46,18 +46,20 @@ make_environment() {
 
 # install [EXTRA]: the package itself, editable, its dependencies at the versions of constraints.txt.
 install() {
-    local what="." wanted
-    [ $# -eq 0 ] || what=".[$1]"
-    # What was installed last time, by the very files that decide it, need not be asked for again.
-    wanted="$what $(cat pyproject.toml scripts/constraints.txt | cksum)"
-    if grep -qxF "$wanted" .venv/installed 2>/dev/null; then
+    local what=. extra=${1:-} locked mark
+    [ -z "$extra" ] || what=".[$extra]"
+    # What these very files have already installed need not be asked for again.
+    locked=$(cat pyproject.toml scripts/constraints.txt | cksum | tr -d ' ')
+    mark=.venv/installed.$locked.${extra:-plain}
+    if [ -e "$mark" ]; then
         return
     fi
-    say "installing $what"
+    say "installing $what at the versions of scripts/constraints.txt"
     if command -v uv >/dev/null; then
         uv pip install --quiet --python .venv/bin/python --constraint scripts/constraints.txt --editable "$what"
     else
         .venv/bin/python -m pip install --quiet --disable-pip-version-check --constraint scripts/constraints.txt --editable "$what"
     fi
-    printf '%s\n' "$wanted" >> .venv/installed
+    find .venv -maxdepth 1 -name 'installed.*' ! -name "installed.$locked.*" -delete
+    : > "$mark"
 }

@@ -8,9 +8,9 @@ from groundroll.ground.model import GroundModel
 from groundroll.running.choices import reference_frequency
 from groundroll.scenario import Scenario
 from groundroll.waves import relaxation
+from groundroll.waves.cell import MECHANISMS
 
 DECADES = 2.0
-MECHANISMS = 4
 # The ground is looked at in this many columns to find its fastest unrelaxed wave.
 LOOKS = 65
 

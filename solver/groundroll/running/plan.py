@@ -61,6 +61,7 @@ def plan(scenario: Scenario, threads: int | None = None) -> Plan:
 
     Raises InputError where the scenario cannot be computed as it stands.
     """
+    refuse_unknown_to_the_solver(scenario)
     pulses = [pulse_function(s.pulse, scenario.folder) for s in scenario.sources]
     model = build_ground(scenario, choices.provisional_spacing(scenario))
     choice = choices.choose_spacing(scenario, model)
@@ -88,6 +89,12 @@ def plan(scenario: Scenario, threads: int | None = None) -> Plan:
     refuse_too_large(made)
     made.warnings.extend(warnings(made))
     return made
+
+
+def refuse_unknown_to_the_solver(scenario: Scenario) -> None:
+    """Refuse what the scenario file knows and the solver does not compute yet."""
+    if scenario.section.geometry == "point":
+        raise InputError('section.geometry: "point" is not computed yet; allowed "line"; remove the key')
 
 
 def make_mesh(scenario: Scenario, model: GroundModel, choice: Choice) -> Mesh:

@@ -4,6 +4,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from groundroll.waves.cell import MECHANISMS
 from groundroll.waves.relaxation import decay_factor
 from groundroll.waves.state import Memory, flat_zeros, inner
 
@@ -33,10 +34,11 @@ def memory(mesh, loss: Loss | None, dt: float, dtype) -> Memory:
     decay = decay_factor(loss.omega, dt)
     gain = 1.0 - decay
     old, new = 0.5 * (1.0 + decay), 0.5 * gain
-    count = len(loss.omega)
+    count = MECHANISMS
     size = mesh.padded_rows * mesh.pitch
     flat = flat_zeros(mesh, 6, dtype)
     for target, value in zip(flat, (*loss.p_node, *loss.s_node, *loss.s_corner), strict=True):
         inner(target, mesh)[:] = value
-    scalars = (decay, gain, loss.shapes[0] * old, loss.shapes[0] * new, loss.shapes[1] * old, loss.shapes[1] * new)
+    y, z = loss.shapes
+    scalars = (decay, gain, y * old, np.array([y @ new]), z * old, np.array([z @ new]))
     return Memory(count, *(v.astype(dtype) for v in scalars), np.zeros((3 * count, size), dtype), *flat)

@@ -38,3 +38,5 @@ REACH, TERRAIN_REACH = 3, 4
 BAND = 2
 # Rows of scratch that the general kernels work in.
 SCRATCH_ROWS = 7
+# Relaxation mechanisms of the attenuation.
+MECHANISMS = 4

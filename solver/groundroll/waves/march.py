@@ -2,10 +2,11 @@
 
 from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
+from pathlib import Path
 
 import numpy as np
 
-from groundroll.waves.cell import REACH, SCRATCH_ROWS, TERRAIN_REACH
+from groundroll.waves.cell import BAND, MECHANISMS, REACH, SCRATCH_ROWS, TERRAIN_REACH
 from groundroll.waves.marching import plain_pass, strip_pass
 from groundroll.waves.points import Receivers, Sources
 from groundroll.waves.state import Fields, Ground
@@ -20,6 +21,33 @@ class Order:
 
 
 PLAIN = Order(steps=1, strip=None)
+# The rows in flight may fill this share of the last cache, which other work needs as well.
+CACHE_SHARE = 0.5
+# Narrower strips spend their time on starting rows.
+LEAST_STRIP = 1024
+# Flat arrays that a band touches: fields and properties, attenuation, terrain helpers.
+ELASTIC_ARRAYS, MEMORY_ARRAYS, TERRAIN_ARRAYS = 10, 3 * MECHANISMS + 6, 4
+
+
+def last_cache(default: int = 8 * 2**20) -> int:
+    """Return the size (bytes) of the largest cache of this machine, as the system tells it."""
+    sizes = [default]
+    for file in Path("/sys/devices/system/cpu/cpu0/cache").glob("index*/size"):
+        text = file.read_text().strip()
+        if text[:-1].isdigit() and text[-1] in "KM":
+            sizes.append(int(text[:-1]) * (2**10 if text[-1] == "K" else 2**20))
+    return max(sizes[1:], default=default)
+
+
+def fitting_order(ground: Ground, itemsize: int, threads: int, cache: int | None = None) -> Order:
+    """Return the order whose rows in flight fit the cache: BAND lag stages rows of every array, for each thread."""
+    arrays = ELASTIC_ARRAYS + MEMORY_ARRAYS * (ground.memory.count > 0) + TERRAIN_ARRAYS * (ground.terrain.rows > 0)
+    share = CACHE_SHARE * (cache or last_cache()) / threads
+    for steps in (8, 4, 2):
+        column = BAND * ground.rows.lag * ground.frame.phases * steps * arrays * itemsize
+        strip = int(share / column)
+        if strip >= LEAST_STRIP or steps == 2:
+            return Order(steps, max(strip, LEAST_STRIP // 2))
 
 
 def strip_blocks(width: int, strip: int, blocks: int, stages: int, reach: int):

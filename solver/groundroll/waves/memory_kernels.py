@@ -13,33 +13,32 @@ holds two numbers for P and two for S. Normal stresses, with P = sum_l Y_l^P xi_
     sxx -= c11 (Pxx + Pzz) - (c11 - c13) Szz,   szz -= c33 (Pxx + Pzz) - (c33 - c13) Sxx,   sxz -= mu Sxz.
 """
 
-import numpy as np
-
+from groundroll.waves.cell import MECHANISMS
 from groundroll.waves.jit import kernel
-
-U = np.uint64
 
 
 @kernel
-def shaped_sums(y_sum, z_sum, xi, e, base, a, b, memory, component):
-    """Form sum_l y_l mean(xi_l) and sum_l z_l mean(xi_l) of a strain component, then advance its xi_l."""
-    count = memory.count
+def shaped_sums(y_sum, z_sum, e, base, a, b, memory, component):
+    """Form sum_l y_l mean(xi_l) and sum_l z_l mean(xi_l) of a strain component, and advance its xi_l.
+
+    Four mechanisms in one loop: each memory variable is loaded and stored once.
+    """
+    xi, first = memory.xi, MECHANISMS * component
+    x0, x1, x2, x3 = xi[first], xi[first + 1], xi[first + 2], xi[first + 3]
+    d0, d1, d2, d3 = memory.decay[0], memory.decay[1], memory.decay[2], memory.decay[3]
+    g0, g1, g2, g3 = memory.gain[0], memory.gain[1], memory.gain[2], memory.gain[3]
+    y0, y1, y2, y3 = memory.y_old[0], memory.y_old[1], memory.y_old[2], memory.y_old[3]
+    z0, z1, z2, z3 = memory.z_old[0], memory.z_old[1], memory.z_old[2], memory.z_old[3]
+    y_new, z_new = memory.y_new[0], memory.z_new[0]
     for i in range(a, b):
-        y_sum[i] = 0.0
-    for i in range(a, b):
-        z_sum[i] = 0.0
-    for m in range(count):
-        decay = memory.decay[m]
-        row = xi[component * count + m]
-        y_old, y_new = memory.y_old[m], memory.y_new[m]
-        z_old, z_new = memory.z_old[m], memory.z_new[m]
-        gain = memory.gain[m]
-        for i in range(a, b):
-            y_sum[i] += y_old * row[base + i] + y_new * e[i]
-        for i in range(a, b):
-            z_sum[i] += z_old * row[base + i] + z_new * e[i]
-        for i in range(base + a, base + b):
-            row[i] = decay * row[i] + gain * e[i - base]
+        j = base + i
+        now, r0, r1, r2, r3 = e[i], x0[j], x1[j], x2[j], x3[j]
+        y_sum[i] = y_new * now + y0 * r0 + y1 * r1 + y2 * r2 + y3 * r3
+        z_sum[i] = z_new * now + z0 * r0 + z1 * r1 + z2 * r2 + z3 * r3
+        x0[j] = d0 * r0 + g0 * now
+        x1[j] = d1 * r1 + g1 * now
+        x2[j] = d2 * r2 + g2 * now
+        x3[j] = d3 * r3 + g3 * now
 
 
 @kernel
@@ -49,16 +48,13 @@ def relax_normal(k, a, b, ground, f, scratch):
     base = ground.frame.origin + k * ground.frame.pitch
     ex, ez = scratch[0], scratch[1]
     yx, zx, yz, zz = scratch[3], scratch[4], scratch[5], scratch[6]
-    shaped_sums(yx, zx, memory.xi, ex, base, a, b, memory, 0)
-    shaped_sums(yz, zz, memory.xi, ez, base, a, b, memory, 1)
+    shaped_sums(yx, zx, ex, base, a, b, memory, 0)
+    shaped_sums(yz, zz, ez, base, a, b, memory, 1)
     p1, p2, s1, s2 = memory.p1, memory.p2, memory.s1, memory.s2
     for i in range(a, b):
         j = base + i
         p = p1[j] * (yx[i] + yz[i]) + p2[j] * (zx[i] + zz[i])
         f.sxx[j] -= m.c11[j] * p - (m.c11[j] - m.c13[j]) * (s1[j] * yz[i] + s2[j] * zz[i])
-    for i in range(a, b):
-        j = base + i
-        p = p1[j] * (yx[i] + yz[i]) + p2[j] * (zx[i] + zz[i])
         f.szz[j] -= m.c33[j] * p - (m.c33[j] - m.c13[j]) * (s1[j] * yx[i] + s2[j] * zx[i])
 
 
@@ -68,7 +64,7 @@ def relax_shear(k, a, b, ground, f, scratch):
     m, memory = ground.material, ground.memory
     base = ground.frame.origin + k * ground.frame.pitch
     y_sum, z_sum = scratch[3], scratch[4]
-    shaped_sums(y_sum, z_sum, memory.xi, scratch[2], base, a, b, memory, 2)
+    shaped_sums(y_sum, z_sum, scratch[2], base, a, b, memory, 2)
     for i in range(a, b):
         j = base + i
         f.sxz[j] -= m.mu[j] * (memory.h1[j] * y_sum[i] + memory.h2[j] * z_sum[i])

@@ -12,7 +12,7 @@ import numpy as np
 from groundroll.waves import dispersion
 from groundroll.waves.assembly import EdgeDamping, Properties, assemble
 from groundroll.waves.attenuation import Loss
-from groundroll.waves.march import March, Order
+from groundroll.waves.march import March, Order, fitting_order
 from groundroll.waves.mesh import Mesh
 from groundroll.waves.placement import SIX, Entries, add_force, add_moment, injection, on_surface, receivers
 from groundroll.waves.points import Sources
@@ -77,14 +77,15 @@ class Simulation:
         sources: list[PointSource],
         points: list[tuple[float, float]],
         dtype=np.float32,
-        order: Order = Order(),
+        order: Order | None = None,
         threads: int = 1,
         loss: Loss | None = None,
     ):
         self.mesh, self.clock, self.properties = mesh, time, properties
-        self.longest_pass = max(order.steps, 1)
         self._sources, self._series = sources, predistorted(sources, time)
         ground = assemble(mesh, properties, time.dt, damping, dtype, loss)
+        order = order or fitting_order(ground, np.dtype(dtype).itemsize, threads)
+        self.longest_pass = order.steps
         self.march = March(
             mesh,
             ground,

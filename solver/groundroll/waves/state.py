@@ -129,10 +129,10 @@ class Terrain(NamedTuple):
 
 
 class Memory(NamedTuple):
-    """Attenuation, see `memory_kernels.py`; `count` = 0 where nothing damps.
+    """Attenuation, see `memory_kernels.py`; `count` mechanisms, 0 where nothing damps.
 
-    `decay`, `gain` (count,): E_l and 1 - E_l; `y_old` ... `z_new`: shapes times the weights of old xi and of
-    the strain in the mean of a step; `xi` (3 count, flat): memory variables of exx, ezz, 2exz; `p1`, `p2`,
+    `decay`, `gain` (count,): E_l and 1 - E_l; `y_old`, `z_old` (count,): shapes times the weight of the old xi in
+    the mean of a step, `y_new`, `z_new` (1,): the weight of the strain there; `xi` (3 count, flat): memory variables of exx, ezz, 2exz; `p1`, `p2`,
     `s1`, `s2` at nodes and `h1`, `h2` at sxz: coefficients of both shapes, flat."""
 
     count: int
