@@ -4,13 +4,14 @@ import re
 
 
 def shortened(text: str, slower: float, duration: float) -> str:
-    """The TOML `text` with all its frequencies divided by `slower` and the run cut to `duration` s."""
+    """The TOML `text` with all frequencies divided by `slower`, the run cut to `duration` s and two snapshots kept."""
 
-    def scaled(key: str, factor: float, text: str) -> str:
-        return re.sub(rf"\b{key} = ([0-9.e+-]+)", lambda m: f"{key} = {float(m[1]) * factor!r}", text)
+    def scale(pattern: str, factor: float) -> None:
+        nonlocal text
+        text = re.sub(f"({pattern} = )([0-9.e+-]+)", lambda m: f"{m[1]}{float(m[2]) * factor!r}", text, flags=re.MULTILINE)
 
-    text = re.sub(r"^duration = [0-9.]+", f"duration = {duration}", text, count=1, flags=re.MULTILINE)
-    for key in ("highest_frequency", r"(?<=, )frequency"):
-        text = re.sub(rf"(?:\b|(?<=, )){key.removeprefix('(?<=, )')} = ([0-9.e+-]+)", _divided(slower), text)
-    text = re.sub(r"(?<=half_sine\", )duration = ([0-9.e+-]+)", _divided(1.0 / slower), text)
+    scale("^highest_frequency", 1.0 / slower)
+    scale(r'shape = "\w+", frequency', 1.0 / slower)
+    scale('shape = "half_sine", duration', slower)
+    text = re.sub(r"^duration = [0-9.]+", f"duration = {duration}", text, flags=re.MULTILINE)
     return re.sub(r"^every = [0-9.]+", f"every = {0.5 * duration}", text, flags=re.MULTILINE)

@@ -91,13 +91,13 @@ def loss_on_mesh(mesh: Mesh, losses: LossModel, stiffness: Stiffness, shear: She
     """Return the coefficients of both shapes.
 
     On the row of a free surface the stiffness is that of a plate, E = 4 mu (1 - mu/M), so its loss is
-    [4 mu (1 - 2 mu/M)/Qs + 4 (mu^2/M)/Qp]/E, taken alike for P and S there.
+    [(1 - 2 mu/M)/Qs + (mu/M)/Qp]/(1 - mu/M), taken alike for P and S there.
     """
     inverse_p, inverse_s = np.array(stiffness.inverse_qp), np.array(stiffness.inverse_qs)
     if mesh.edges[2] == "free":
         mu, m = 0.5 * (stiffness.c11[0] - stiffness.c13[0]), stiffness.c11[0]
-        plate = 4.0 * mu * (1.0 - mu / m)
-        inverse_p[0] = inverse_s[0] = (4.0 * mu * (1.0 - 2.0 * mu / m) * inverse_s[0] + 4.0 * mu**2 / m * inverse_p[0]) / plate
+        share = np.divide(mu, m, out=np.zeros(m.shape), where=m > 0.0)  # a void has neither
+        inverse_p[0] = inverse_s[0] = ((1.0 - 2.0 * share) * inverse_s[0] + share * inverse_p[0]) / (1.0 - share)
     return Loss(
         omega=losses.omega,
         shapes=losses.shapes,

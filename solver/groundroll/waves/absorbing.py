@@ -8,7 +8,7 @@ Along one axis, with u the depth into the layer over its thickness (0 at the sec
 (Collino & Tsogka 2001, Geophysics 66, 294, for d0; Roden & Gedney 2000; Komatitsch & Martin 2007).
 
 Guided waves of layered ground may have opposite phase and group velocities, and a layer that damps along
-one axis only lets them grow. So velocity and stress also fade along both axes, as exp(-PARALLEL d0 u^8 dt) a step,
+one axis only lets them grow. So velocity and stress also fade along both axes, as exp(-PARALLEL d0 u^6 dt) a step,
 and (1 - PARALLEL) d stretches the normal axis: the multi-axial layer of Meza-Fajardo & Papageorgiou 2008
 (Bull. Seism. Soc. Am. 98, 1811), written as a fading with a gentler onset so that it reflects less.
 """
@@ -18,10 +18,10 @@ import numpy as np
 from groundroll.waves.state import Layers, Sides
 
 CELLS = 20
-REFLECTION = 1e-3
+REFLECTION = 1e-4
 ORDER = 2
-PARALLEL = 0.12
-FADING_ORDER = 8
+PARALLEL = 0.03
+FADING_ORDER = 6
 
 
 def recursion(u, thickness, speed, shift, dt):
@@ -56,7 +56,7 @@ def sides(mesh, speed, shift, dt, dtype) -> Sides:
     u = _axis(mesh.nx, left, right)
     window = np.r_[0:left_end, right_start : mesh.nx]
     thickness = mesh.spacing * max(left, right, 1)
-    b, a, fade = (v[:, window].astype(dtype) for v in recursion(u, thickness, speed, shift, dt))
+    b, a, fade = (v[:, window].astype(dtype, order="C") for v in recursion(u, thickness, speed, shift, dt))
     psi = np.zeros((4, mesh.nz, len(window)), dtype=dtype)
     return Sides(np.uint64(left_end), np.uint64(right_start), psi, b, a, fade)
 
@@ -70,6 +70,6 @@ def layers(mesh, speed, shift, dt, dtype) -> Layers:
     index[rows] = np.arange(len(rows))
     stretch = mesh.stretch_node[-1] if bottom else mesh.stretch_node[0]
     thickness = mesh.spacing * stretch * max(top, bottom, 1)
-    b, a, fade = (v[:, rows].astype(dtype) for v in recursion(u, thickness, speed, shift, dt))
+    b, a, fade = (v[:, rows].astype(dtype, order="C") for v in recursion(u, thickness, speed, shift, dt))
     psi = np.zeros((4, len(rows), mesh.pitch), dtype=dtype)
     return Layers(index, psi, b, a, fade)

@@ -51,14 +51,19 @@ def stiffness_at_edges(mesh: Mesh, p: Properties) -> tuple[np.ndarray, np.ndarra
         c11[0], c13[0], c33[0] = softened(c11[0], c13[0], c33[0], mesh.terrain.slope[0])
         top = False
     for row in [0] * top + [-1] * bottom:
-        c11[row] -= c13[row] ** 2 / c33[row]
+        c11[row] -= ratio(c13[row] ** 2, c33[row])
         c13[row] = c33[row] = 0.0
     for column in [0] * left + [-1] * right:
-        stiff = np.where(c33[:, column] > 0.0, c33[:, column], 0.0)
-        coupling = np.divide(c13[:, column] ** 2, c11[:, column], out=np.zeros(mesh.nz), where=c11[:, column] > 0)
-        c33[:, column] = np.where(stiff > 0.0, stiff - coupling, 0.0)
+        c33[:, column] -= ratio(c13[:, column] ** 2, c11[:, column])
+        # A corner between two free edges holds no stress at all.
+        c33[[0] * top + [-1] * bottom, column] = 0.0
         c11[:, column] = c13[:, column] = 0.0
     return c11, c13, c33
+
+
+def ratio(above: np.ndarray, below: np.ndarray) -> np.ndarray:
+    """Return above / below, 0 where `below` is 0 (a void)."""
+    return np.divide(above, below, out=np.zeros_like(above), where=below > 0.0)
 
 
 def velocity_mask(mesh: Mesh) -> tuple[np.ndarray, np.ndarray]:
@@ -69,6 +74,8 @@ def velocity_mask(mesh: Mesh) -> tuple[np.ndarray, np.ndarray]:
         z[-1] = 0.0
     if right != "absorb":
         x[:, -1] = 0.0
+    if top == "rigid":
+        x[0] = 0.0
     if bottom == "rigid":
         x[-1] = 0.0
     if left == "rigid":

@@ -23,7 +23,8 @@ The four one-dimensional derivative operators, named alike along x and z:
     HALF_MOMENTUM node -> half, acts on stress      (sxx along x for vx, szz along z for vz)
 """
 
-MARGIN_ROWS = 4
+# Eight taps from two rows above the last half row end five rows below the mesh.
+MARGIN_ROWS = 5
 MARGIN_COLUMNS = 16
 
 NODE_STRAIN, HALF_STRAIN, NODE_MOMENTUM, HALF_MOMENTUM = 0, 1, 2, 3

@@ -2,7 +2,8 @@
 
 A value at a point is a tensor product of SIX-point Lagrange interpolations along the column and row
 index (6th order, the order of the scheme); near an end of the mesh the six points are shifted inward.
-On a free surface itself vx is row 0 and vz the closure's trace l of the first four half rows.
+On a free surface itself vx is row 0 and vz the closure's trace l of the first four half rows; half rows just
+below it are weighted so that the closure's own error is not felt (`blind_to_closure`).
 
 A point source is the adjoint: weight over the quadrature weight H of the cell, so that the work it does
 is force times interpolated velocity. Force f (N/m):  v += dt f w / (rho H h^2).  Moment M (N):
@@ -13,14 +14,16 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from groundroll.waves.assembly import Properties
+from groundroll.waves.assembly import Properties, ratio
 from groundroll.waves.cell import BAND
 from groundroll.waves.mesh import Mesh
-from groundroll.waves.operators import closure
+from groundroll.waves.operators import CLOSED_HALVES, closure
 from groundroll.waves.points import Injection, Receivers
 from groundroll.waves.terrain import KAPPA, softened
 
 SIX = 6
+# Half rows that a source or receiver near a free surface is spread over.
+BLIND_ROWS = 8
 U = np.uint64
 VX, VZ, SXX, SZZ, SXZ = range(5)
 # (half column?, half row?) of each field
@@ -64,8 +67,31 @@ def cells_of(mesh: Mesh, field: int, x: float, depth: float) -> Cells:
     if on_surface(mesh, depth):
         trace = closure().trace if half_row else np.ones(1)
         return Cells(np.arange(len(trace)), column, trace, column_weight)
-    row, row_weight = lagrange(row_position(mesh, x, depth) - 0.5 * half_row, 0, last_row)
+    position = row_position(mesh, x, depth) - 0.5 * half_row
+    row, row_weight = lagrange(position, 0, last_row)
+    if half_row and mesh.edges[2] == "free" and row[0] < CLOSED_HALVES and last_row >= BLIND_ROWS:
+        row, row_weight = blind_to_closure(position, row, row_weight)
     return Cells(row, column, row_weight, column_weight)
+
+
+def blind_to_closure(position: float, row: np.ndarray, weight: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+    """Return half rows and weights that interpolate near a free surface without feeling the closure's error.
+
+    The closure's derivative of a cubic is off by 6 t, t = (Dh z^3 - 3 z^2)/6, on its half rows; a source spread with
+    weights w excites that error in the measure w.t. The weights returned are the given ones plus the smallest
+    change (least squares) that keeps polynomials to degree 3 exact and makes w.t = 0, over BLIND_ROWS rows or more.
+    """
+    count = max(BLIND_ROWS, row[-1] + 1)
+    w = np.zeros(count)
+    w[row] = weight
+    dh = closure().dh
+    nodes, halves = np.arange(dh.shape[1], dtype=float), np.arange(len(dh)) + 0.5
+    error = np.zeros(count)
+    error[: len(dh)] = (dh @ nodes**3 - 3.0 * halves**2) / 6.0
+    # Powers about the point, in units of 4 rows to keep the system well conditioned.
+    conditions = np.stack([*(((np.arange(count) - position) / 4.0) ** degree for degree in range(4)), error])
+    wanted = np.array([1.0, 0.0, 0.0, 0.0, 0.0])
+    return np.arange(count), w + np.linalg.pinv(conditions) @ (wanted - conditions @ w)
 
 
 def on_surface(mesh: Mesh, depth: float) -> bool:
@@ -148,7 +174,7 @@ def add_sloped_traction(mesh, p: Properties, tractions: Entries, x, force, pulse
 def surface_coupling(mesh, p: Properties, column) -> np.ndarray:
     """Return c13/c33 of row 0 at `column`."""
     shape = (mesh.nz, mesh.nx)
-    return np.broadcast_to(p.c13, shape)[0, column] / np.broadcast_to(p.c33, shape)[0, column]
+    return ratio(np.broadcast_to(p.c13, shape)[0, column], np.broadcast_to(p.c33, shape)[0, column])
 
 
 def add_moment(mesh, p: Properties, moments: Entries, x, depth, moment, pulse) -> None:

@@ -147,7 +147,7 @@ def softened(c11, c13, c33, slope):
     """Return C0 = (c11, c13, c33) of row 0 for the stiffness C there and the surface `slope` q."""
     p = slope**2
     determinant = c11 * c33 - c13**2
-    # d^T S d with S = C^-1.
-    compliance = (c33 - 2.0 * p * c13 + p**2 * c11) / determinant
-    soft = (1.0 - KAPPA) / compliance
+    # d^T S d with S = C^-1, times the determinant; both are 0 in a void.
+    compliance_times = c33 - 2.0 * p * c13 + p**2 * c11
+    soft = (1.0 - KAPPA) * np.divide(determinant, compliance_times, out=np.zeros_like(c11), where=compliance_times > 0.0)
     return KAPPA * c11 + soft, KAPPA * c13 + soft * p, KAPPA * c33 + soft * p**2
