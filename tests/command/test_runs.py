@@ -13,7 +13,7 @@ from ..running.small import SMALL, changed
 
 # Some ten seconds of stepping, seismograms written at quarters of it.
 LONG = changed(
-    SMALL, ("length = 30.0", "length = 200.0"), ("depth = 15.0", "depth = 100.0"), ("duration = 0.25", "duration = 4.0"),
+    SMALL, ("length = 30.0", "length = 200.0"), ("depth = 15.0", "depth = 100.0"), ("duration = 0.25", "duration = 3.0"),
     ("[[ground.layer]]", "[mesh]\nspacing = 0.4\n[[ground.layer]]"), ('"displacement", "velocity", "acceleration"', '"velocity"'),
 )  # fmt: skip
 
@@ -90,14 +90,14 @@ def test_ctrl_c_keeps_the_records_marked_incomplete(shell):
     shell.write("a.toml", LONG)
     status, out, err = stopped_midway(shell, by=signal.SIGINT)
     assert status == 130, err
-    assert err.startswith("groundroll run: interrupted at t = ") and err.endswith(" s of 4 s; what was recorded is kept\n")
+    assert err.startswith("groundroll run: interrupted at t = ") and err.endswith(" s of 3 s; what was recorded is kept\n")
     assert len(err.splitlines()) == 1
     at = float(err.split()[5])
     records = open_records(shell.folder / "outputs/a")
     assert not records.complete and records.path.name == "records.h5"
     times = records.seismograms["line"].time
     # Up to where it was stopped, the last sample included.
-    assert 0.9 < at < 4.0 and at - 0.0021 < times[-1] <= at + 1e-9
+    assert 0.7 < at < 3.0 and at - 0.0021 < times[-1] <= at + 1e-9
     assert np.abs(records.seismograms["line"].velocity_z).max() > 0.0
     assert shell("draw", "outputs/a", "-q").returncode == 0
 
@@ -108,7 +108,7 @@ def test_a_killed_run_leaves_a_readable_file_and_the_next_run_replaces_it(shell)
     assert status == -signal.SIGKILL
     records = open_records(shell.folder / "outputs/a")
     assert not records.complete and records.path.name == "records.h5.partial"
-    assert records.seismograms["line"].time[-1] > 0.9
+    assert records.seismograms["line"].time[-1] > 0.7
     assert np.abs(records.seismograms["line"].velocity_z).max() > 0.0
     shell.write("a.toml")
     assert shell("run", "a.toml", "-q", "--threads", 1).returncode == 0

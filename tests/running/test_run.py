@@ -1,6 +1,7 @@
 """A run keeps its promises: on disk as in memory, the whole contract of records.h5, nothing pretended."""
 
 import hashlib
+import signal
 import tomllib
 
 import h5py
@@ -10,7 +11,7 @@ import xarray as xr
 from numpy.testing import assert_allclose, assert_array_equal
 
 from groundroll import Scenario, open_records, plan, run
-from groundroll.errors import ComputationError, InputError, StorageError
+from groundroll.errors import ComputationError, InputError, Interrupted, StorageError
 from groundroll.running import observers
 
 from .small import SMALL, small
@@ -98,11 +99,11 @@ def test_displacement_velocity_and_acceleration_belong_together(in_memory):
 
 
 def test_momentum_is_the_impulse_of_the_source_until_waves_leave(in_memory):
-    """The nearest edge is 8 m away; in 56 ms less than a thousandth of the impulse has gone there (P: 350 m/s)."""
+    """The nearest edge is 8 m away, 23 ms for P at 350 m/s: at 56 ms it sees the pulse's first thousandths only."""
     ledger = in_memory.ledger
     early = ledger.time < 0.056
     peak = np.abs(ledger.impulse_z[early]).max()
-    assert early.sum() >= 6 and peak > 10.0
+    assert early.sum() >= 6 and peak > 5.0
     assert_allclose(ledger.momentum_z[early], ledger.impulse_z[early], rtol=0, atol=0.005 * peak)
     assert np.abs(ledger.impulse_x).max() == 0.0
 
@@ -157,6 +158,24 @@ def test_a_steeply_unstable_step_is_caught(tmp_path, monkeypatch):
     monkeypatch.setattr(choices, "time_step", lambda mesh, fastest: 1.3 * step(mesh, fastest))
     with np.errstate(all="ignore"), pytest.raises(ComputationError, match="grew beyond all bounds"):
         run(small(("duration = 0.25", "duration = 1.0")), out=tmp_path, threads=1)
+    assert not open_records(tmp_path).complete
+
+
+def test_ctrl_c_in_the_midst_of_a_write_waits_for_its_end(tmp_path, monkeypatch):
+    put = observers.Seismograms.see
+    done = []
+
+    def pressed_within(self, simulation):
+        if not done:
+            signal.raise_signal(signal.SIGINT)
+        put(self, simulation)
+        done.append(simulation.step)
+
+    monkeypatch.setattr(observers.Seismograms, "see", pressed_within)
+    with pytest.raises(Interrupted, match=r"^interrupted at t = 0\.\d+ s of 0\.25 s; what was recorded is kept$"):
+        run(small(), out=tmp_path, threads=1)
+    assert len(done) == 2 and done[0] == done[1]  # the write went on to its end; then all was written once more
+    assert signal.getsignal(signal.SIGINT) is signal.default_int_handler
     assert not open_records(tmp_path).complete
 
 

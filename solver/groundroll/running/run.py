@@ -13,6 +13,7 @@ from groundroll.records import Records, RecordsWriter, SnapshotFrame
 from groundroll.running import choices, machine, scene
 from groundroll.running.error_law import PEAK_TO_HIGHEST
 from groundroll.running.ground_on_mesh import sample
+from groundroll.running.interruption import Interruption
 from groundroll.running.observers import Seismograms, Snapshots, Totals
 from groundroll.running.plan import Plan, plan, room_for
 from groundroll.running.progress import progress_for
@@ -136,17 +137,24 @@ def announce_compiling(quiet: bool) -> None:
 
 
 def march_through(simulation: Simulation, observers) -> float:
-    """Advance to the end, stopping at every step that an observer has asked for; return seconds of stepping."""
+    """Advance to the end, stopping at every step that an observer has asked for; return seconds of stepping.
+
+    Raises KeyboardInterrupt after the pass, or the observers' call, during which the user pressed Ctrl-C.
+    """
     stops = sorted({step for o in observers for step in o.due if step < simulation.clock.steps} | {simulation.clock.steps})
     waiting = {id(o): set(o.due) for o in observers}
     stepping = 0.0
-    for stop in stops:
-        start = time.perf_counter()
-        simulation.advance(stop - simulation.step)
-        stepping += time.perf_counter() - start
-        for observer in observers:
-            if stop in waiting[id(observer)]:
-                observer.see(simulation)
+    with Interruption() as interruption:
+        for stop in stops:
+            start = time.perf_counter()
+            while simulation.step < stop:
+                simulation.advance(min(simulation.longest_pass, stop - simulation.step))
+                interruption.obey()
+            stepping += time.perf_counter() - start
+            for observer in observers:
+                if stop in waiting[id(observer)]:
+                    observer.see(simulation)
+            interruption.obey()
     return stepping
 
 
