@@ -132,8 +132,8 @@ def test_the_scripts_install_locked_versions_once(copy):
     for mark in (copy / ".venv").glob("installed.*"):
         mark.unlink()
     for _ in range(2):
-        done = bash(copy, "bash scripts/run_tests.sh -q tests/test_one.py")
-        assert done.returncode == 0 and "1 passed" in done.stdout, done.stderr
+        done = bash(copy, "bash scripts/run_tests.sh tests/test_one.py")
+        assert done.returncode == 0 and "passed" in done.stdout, done.stdout
     wanted = "-m pip install --quiet --disable-pip-version-check --constraint scripts/constraints.txt --editable .[test]\n"
     assert (copy / "pip.log").read_text() == wanted
 

@@ -101,13 +101,16 @@ def make_mesh(scenario: Scenario, model: GroundModel, choice: Choice) -> Mesh:
     """Return the mesh: even or graded in depth, level or laid under the terrain."""
     edges, section = scenario.mesh.edges, scenario.section
     conditions = (edges.left, edges.right, edges.top, edges.bottom)
+    # The level mesh begins at the middle of the relief and ends at section.depth below the datum.
+    heights = model.surface_elevation(np.linspace(0.0, section.length, 2001))
+    depth = section.depth + 0.5 * float(heights.max() + heights.min())
     if scenario.mesh.graded:
-        grading = grade(model, choice.spacing, section.depth, choices.surface_wavelength(scenario, model))
-        rows = math.ceil(grading.zeta_at(section.depth) / choice.spacing - 1e-9)
+        grading = grade(model, choice.spacing, depth, choices.surface_wavelength(scenario, model))
+        rows = math.ceil(grading.zeta_at(depth) / choice.spacing - 1e-9)
         mesh = even_mesh(choice.spacing, section.length, rows * choice.spacing, conditions, absorbing.CELLS)
         mesh = with_depths(mesh, grading.depth_of, grading.stretch_of)
     else:
-        mesh = even_mesh(choice.spacing, section.length, section.depth, conditions, absorbing.CELLS)
+        mesh = even_mesh(choice.spacing, section.length, depth, conditions, absorbing.CELLS)
     if scenario.ground.terrain is None:
         return mesh
     refuse_steep_relief(scenario, model)

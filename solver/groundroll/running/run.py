@@ -80,7 +80,11 @@ def snapshot_frame(made: Plan) -> SnapshotFrame | None:
     if made.scenario.snapshots is None:
         return None
     mesh = made.mesh
-    return SnapshotFrame(made.scenario.snapshots.fields, mesh.x_node[mesh.section_columns], mesh.depth_node[mesh.section_rows])
+    elevation = mesh.node_elevation()
+    if elevation is not None:
+        elevation = elevation[mesh.section_rows, mesh.section_columns]
+    x, z = mesh.x_node[mesh.section_columns], mesh.depth_node[mesh.section_rows]
+    return SnapshotFrame(made.scenario.snapshots.fields, x, z, elevation)
 
 
 def point_sources(made: Plan) -> list[PointSource]:

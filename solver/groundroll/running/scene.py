@@ -98,4 +98,7 @@ def ground_arrays(made: Plan, properties) -> tuple:
         "density": (density, "kg m-3", "density on the mesh"),
         "points_per_wavelength": (vs / frequency / mesh.spacing, "1", "mesh points per S wavelength at the highest frequency"),
     }
-    return arrays, mesh.x_node[columns], mesh.depth_node[rows]
+    elevation = mesh.node_elevation()
+    if elevation is not None:
+        elevation = elevation[np.ix_(rows, columns)]
+    return arrays, mesh.x_node[columns], mesh.depth_node[rows], elevation

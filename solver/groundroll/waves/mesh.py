@@ -83,6 +83,13 @@ class Mesh:
             return self.terrain.stretch(half_row, half_column)
         return (self.stretch_half if half_row else self.stretch_node)[:, None]
 
+    def node_elevation(self) -> np.ndarray | None:
+        """Return the elevation (m, positive up) of all nodes, (nz, nx), or None on a level mesh."""
+        if self.terrain is None:
+            return None
+        mapped = self.terrain.blend[0][:, None] * self.terrain.shift[0][None, :]
+        return -(self.datum + self.depth_node[:, None] + mapped)
+
     @property
     def section_columns(self) -> slice:
         return slice(self.absorbing[0], self.nx - self.absorbing[1])
