@@ -111,20 +111,15 @@ def test_files_named_in_the_readme_are_there():
         assert (ROOT / name).exists(), name
 
 
-def test_first_run_from_another_folder_says_where_all_lies(copy, tmp_path):
-    done = bash(copy, f"bash {copy}/scripts/first_run.sh", folder=tmp_path)
-    assert done.returncode == 0, done.stderr
-    folder = copy / "outputs" / "pile_by_clinic"
-    assert done.stdout.splitlines()[-2:] == [f"records: {folder}/records.h5", f"figures: {folder}/figures"]
-    assert "peak velocity (mm/s)" in done.stdout and "clinic " in done.stdout
-    assert list(tmp_path.iterdir()) == []
-
-
-def test_first_run_takes_a_scenario_seen_from_where_it_was_started(copy, tmp_path):
+def test_first_run_from_another_folder_takes_a_scenario_from_there_and_says_where_all_lies(copy, tmp_path):
     shutil.copy(copy / "configs" / "levee_hammer_line.toml", tmp_path / "mine.toml")
     done = bash(copy, f"bash {copy}/scripts/first_run.sh mine.toml", folder=tmp_path)
     assert done.returncode == 0, done.stderr
-    assert open_records(copy / "outputs" / "mine").complete
+    folder = copy / "outputs" / "mine"
+    assert done.stdout.splitlines()[-2:] == [f"records: {folder}/records.h5", f"figures: {folder}/figures"]
+    assert "peak velocity (mm/s)" in done.stdout and "\nspread " in done.stdout
+    assert open_records(folder).complete and list((folder / "figures").glob("*.png"))
+    assert [path.name for path in tmp_path.iterdir()] == ["mine.toml"]
 
 
 def test_the_scripts_install_locked_versions_once(copy):

@@ -92,7 +92,7 @@ def test_ctrl_c_keeps_the_records_marked_incomplete(shell):
     assert status == 130, err
     assert err.startswith("groundroll run: interrupted at t = ") and err.endswith(" s of 3 s; what was recorded is kept\n")
     assert len(err.splitlines()) == 1
-    at = float(err.split()[5])
+    at = float(err.split()[6])
     records = open_records(shell.folder / "outputs/a")
     assert not records.complete and records.path.name == "records.h5"
     times = records.seismograms["line"].time
