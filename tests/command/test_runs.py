@@ -11,10 +11,10 @@ from groundroll import open_records
 
 from ..running.small import SMALL, changed
 
-# Some ten seconds of stepping, seismograms written at quarters of it.
+# Several seconds of stepping, seismograms written at quarters of it.
 LONG = changed(
     SMALL, ("length = 30.0", "length = 200.0"), ("depth = 15.0", "depth = 100.0"), ("duration = 0.25", "duration = 3.0"),
-    ("[[ground.layer]]", "[mesh]\nspacing = 0.4\n[[ground.layer]]"), ('"displacement", "velocity", "acceleration"', '"velocity"'),
+    ("[[ground.layer]]", "[mesh]\nspacing = 0.5\n[[ground.layer]]"), ('"displacement", "velocity", "acceleration"', '"velocity"'),
 )  # fmt: skip
 
 

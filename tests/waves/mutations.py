@@ -101,14 +101,14 @@ def receivers_on_the_first_half_row(monkeypatch):
 
 
 def no_predistortion(monkeypatch):
-    def as_it_is(pulse, times_in, dt, steps, start=0.0):
+    def as_it_is(pulse, times_in, dt, steps, start=0.0, top=None):
         return np.interp(start + dt * np.arange(steps), times_in, pulse)
 
     monkeypatch.setattr(dispersion, "predistort", as_it_is)
 
 
 def no_correction(monkeypatch):
-    def as_it_is(traces, dt, times, top, start=0.0, quantity="velocity"):
+    def as_it_is(traces, dt, times, top, start=0.0, quantity="velocity", top=None):
         at = start + dt * np.arange(traces.shape[1])
         return np.array([np.interp(times, at, trace) for trace in traces])
 

@@ -51,30 +51,43 @@ def resynthesise(samples, times_in, omega_in, times_out, omega_out, weight, wave
     return out
 
 
-def predistort(pulse, times_in, dt, steps, start=0.0):
+def predistort(pulse, times_in, dt, steps, start=0.0, top=np.inf):
     """Return the source series, sampled at start + n dt (n < steps), of a pulse given at `times_in`.
 
-    `pulse` (n,) is sampled at even times fine enough for its spectrum and zero outside them. The
-    component at Omega of the pulse is laid at omega_s; frequencies beyond 2/dt are left out.
+    `pulse` (n,) is sampled at even times fine enough for its spectrum and zero outside them. The component at
+    Omega of the pulse is laid at omega_s, up to the frequency `top` (Hz, fading out over its last quarter); what
+    the pulse holds above is left as it is.
     """
     step_in = times_in[1] - times_in[0]
     times_out = start + dt * np.arange(steps)
     span = 2.0 * max(times_out[-1], times_in[-1]) + 64.0 * dt - 2.0 * min(start, times_in[0], 0.0)
-    omega_s, weight = _frequencies(span, min(np.pi / dt, np.pi / step_in))
+    limit = min(np.pi / dt, np.pi / step_in, 2.0 * np.pi * top)
+    omega_s, weight = _frequencies(span, limit)
+    if 2.0 * np.pi * top <= limit:
+        weight = weight * fade_out(omega_s, limit)
     omega = 2.0 / dt * np.sin(0.5 * dt * omega_s)
-    return resynthesise(pulse[None, :], times_in, omega, times_out, omega_s, weight)[0]
+    moved, left = (resynthesise(pulse[None, :], times_in, w, times_out, omega_s, weight)[0] for w in (omega, omega_s))
+    return np.interp(times_out, times_in, pulse, left=0.0, right=0.0) + moved - left
+
+
+def fade_out(omega, end):
+    """Return 1 below three quarters of `end`, falling smoothly to 0 there."""
+    u = np.clip((omega / end - 0.75) / 0.25, 0.0, 1.0)
+    return np.cos(0.5 * np.pi * u) ** 2
 
 
 def correct(traces, dt, times_out, top, start=0.0, quantity="velocity"):
     """Return `traces` (trace, n) of velocity sampled at start + n dt freed of time dispersion, at `times_out`.
 
     `quantity` "acceleration" or "displacement" returns their derivative or their integral from t = 0, formed
-    exactly from the same spectrum. Frequencies up to `top` (Hz) are kept; the last part of the record should
-    be tapered by the caller if it does not end quietly.
+    exactly from the same spectrum. Frequencies up to `top` (Hz) are kept, fading out over the last quarter; the
+    last part of the record should be tapered by the caller if it does not end quietly.
     """
     times_in = start + dt * np.arange(traces.shape[1])
     span = 1.25 * (times_in[-1] - min(start, 0.0)) + 64.0 * dt
-    omega, weight = _frequencies(span, min(2.0 * np.pi * top, 1.9 / dt))
+    end = min(2.0 * np.pi * top, 1.9 / dt)
+    omega, weight = _frequencies(span, end)
+    weight = weight * fade_out(omega, end)
     return resynthesise(traces, times_in, scheme_frequency(omega, dt), times_out, omega, weight, MOTION[quantity])
 
 

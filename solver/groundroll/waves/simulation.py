@@ -22,6 +22,8 @@ from groundroll.waves.state import new_fields
 RUN_OUT = 4.0
 # The pulse's spectrum counts as ended where it stays below this part of its peak.
 SPECTRUM_END = 1e-6
+# A rough pulse has no end; what lies above this multiple of the highest frequency is left out of the records.
+WIDEST = 5.0
 
 
 @dataclass(frozen=True)
@@ -51,7 +53,9 @@ def clock(duration: float, dt: float, highest_frequency: float, pulses) -> Clock
     The scheme's own time runs behind at frequency f by about (2 pi f dt)^2 / 24 of the time passed and its
     group delay by three times that, so the run goes on until the slowest component kept has come in.
     """
-    top = min(max([highest_frequency, *(spectrum_end(p, duration, dt) for p in pulses)]), 0.25 / dt)
+    end = max([highest_frequency, *(spectrum_end(p, duration, dt) for p in pulses)])
+    # A record fades out over the last quarter below `top`, see `dispersion.correct`.
+    top = min(end / 0.75, WIDEST * highest_frequency, 0.25 / dt)
     late = duration * (2.0 * np.pi * highest_frequency * dt) ** 2 / 8.0
     steps = int(np.ceil((duration + late + RUN_OUT / highest_frequency) / dt)) + 1
     return Clock(dt, steps, duration, top)
@@ -162,7 +166,7 @@ class Simulation:
 def predistorted(sources: list[PointSource], time: Clock) -> np.ndarray:
     """Return the sources' series (source, steps + 1), predistorted for the scheme's time dispersion."""
     fine = time.dt * np.arange(time.steps + 1)
-    series = [dispersion.predistort(s.pulse(fine), fine, time.dt, time.steps + 1) for s in sources]
+    series = [dispersion.predistort(s.pulse(fine), fine, time.dt, time.steps + 1, top=time.top) for s in sources]
     return np.array(series).reshape(len(sources), time.steps + 1)
 
 
