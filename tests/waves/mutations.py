@@ -108,7 +108,7 @@ def no_predistortion(monkeypatch):
 
 
 def no_correction(monkeypatch):
-    def as_it_is(traces, dt, times, top, start=0.0, quantity="velocity", top=None):
+    def as_it_is(traces, dt, times, top, start=0.0, quantity="velocity"):
         at = start + dt * np.arange(traces.shape[1])
         return np.array([np.interp(times, at, trace) for trace in traces])
 

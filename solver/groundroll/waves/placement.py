@@ -124,7 +124,7 @@ class Entries:
         if self._parts:
             row, column, field, weight, pulse = (np.concatenate(p) for p in zip(*self._parts, strict=True))
         else:
-            row, column, field, weight, pulse = (np.zeros(0, dtype=int) for _ in range(5))
+            row, column, field, weight, pulse = (np.zeros(0, dtype=t) for t in (int, int, int, float, int))
         order = np.argsort(row, kind="stable")
         row, column, field, weight, pulse = (v[order] for v in (row, column, field, weight, pulse))
         first = np.searchsorted(row // BAND, np.arange(mesh.bands + 1))
