@@ -57,7 +57,6 @@ class Case:
             inside = lambda x: ((x > 0) & (x < nx - 41)).astype(float)  # noqa: E731
             mesh = with_terrain(mesh, lambda x: 8.0 * np.sin(k * x) ** 2 * inside(x), lambda x: 8.0 * k * np.sin(2 * k * x) * inside(x))
         dt = time_step(mesh, 450.0)
-        clock = Clock(dt, 10**6 if nz * nx < 10**5 else 20_000, 1.0, 60.0)
         source = PointSource(0.5 * nx, 0.3 * nz, lambda t: pulses.ricker(t, 20.0, 0.075), moment=(1e5, 1e5, 0.0))
         points = [(x, 0.0) for x in np.linspace(30.0, nx - 80.0, 50)]
         chosen = {} if order is None else {"order": order}
