@@ -22,9 +22,9 @@ class Order:
 
 PLAIN = Order(steps=1, strip=None)
 # The rows in flight may fill this share of the last cache, which other work needs as well.
-CACHE_SHARE = 0.5
+CACHE_SHARE = 0.7
 # Narrower strips spend their time on starting rows.
-LEAST_STRIP = 1024
+LEAST_STRIP = 2000
 # Flat arrays that a band touches: fields and properties, attenuation, terrain helpers.
 ELASTIC_ARRAYS, MEMORY_ARRAYS, TERRAIN_ARRAYS = 10, 3 * MECHANISMS + 6, 4
 
@@ -39,15 +39,18 @@ def last_cache(default: int = 8 * 2**20) -> int:
     return max(sizes[1:], default=default)
 
 
-def fitting_order(ground: Ground, itemsize: int, threads: int, cache: int | None = None) -> Order:
-    """Return the order whose rows in flight fit the cache: BAND lag stages rows of every array, for each thread."""
+def fitting_order(ground: Ground, width: int, itemsize: int, threads: int, cache: int | None = None) -> Order:
+    """Return the order whose rows in flight fit the cache: BAND lag stages rows of every array, for each thread.
+
+    Many steps per pass spare memory but want wide strips, and blocks much wider than the wedges between them.
+    """
     arrays = ELASTIC_ARRAYS + MEMORY_ARRAYS * (ground.memory.count > 0) + TERRAIN_ARRAYS * (ground.terrain.rows > 0)
     share = CACHE_SHARE * (cache or last_cache()) / threads
-    for steps in (8, 4, 2):
-        column = BAND * ground.rows.lag * ground.frame.phases * steps * arrays * itemsize
-        strip = int(share / column)
-        if strip >= LEAST_STRIP or steps == 2:
-            return Order(steps, max(strip, LEAST_STRIP // 2))
+    for steps in (16, 8, 4, 2):
+        stages = ground.frame.phases * steps
+        strip = int(share / (BAND * ground.rows.lag * stages * arrays * itemsize))
+        if steps == 2 or (strip >= LEAST_STRIP and width >= threads * 4 * TERRAIN_REACH * stages):
+            return Order(steps, max(strip, LEAST_STRIP))
 
 
 def strip_blocks(width: int, strip: int, blocks: int, stages: int, reach: int):

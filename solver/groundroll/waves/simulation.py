@@ -88,7 +88,7 @@ class Simulation:
         self.mesh, self.clock, self.properties = mesh, time, properties
         self._sources, self._series = sources, predistorted(sources, time)
         ground = assemble(mesh, properties, time.dt, damping, dtype, loss)
-        order = order or fitting_order(ground, np.dtype(dtype).itemsize, threads)
+        order = order or fitting_order(ground, mesh.nx, np.dtype(dtype).itemsize, threads)
         self.longest_pass = order.steps
         self.march = March(
             mesh,
