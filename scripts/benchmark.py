@@ -26,7 +26,7 @@ from groundroll.waves import pulses, relaxation
 from groundroll.waves.assembly import EdgeDamping, Properties
 from groundroll.waves.attenuation import Loss
 from groundroll.waves.cell import INTERIOR
-from groundroll.waves.march import PLAIN, Order
+from groundroll.waves.march import PLAIN
 from groundroll.waves.mesh import even_mesh, with_terrain
 from groundroll.waves.simulation import Clock, PointSource, Simulation
 

@@ -6,7 +6,6 @@ An observer has `due`, the sorted steps after which it wants to be called, and `
 import numpy as np
 
 from groundroll.errors import ComputationError
-from groundroll.motion.derivative import differentiate
 from groundroll.records import RecordsWriter, SnapshotFrame
 from groundroll.waves.ledger import Ledger
 from groundroll.waves.simulation import Simulation
