@@ -6,7 +6,7 @@ from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 from numpy.testing import assert_array_equal
 
-from groundroll.waves import assembly, march
+from groundroll.waves import assembly, march, marching
 from groundroll.waves.march import PLAIN, Order, strip_blocks
 from groundroll.waves.mesh import even_mesh
 from groundroll.waves.simulation import PointSource
@@ -57,6 +57,9 @@ def _same_bits(edges, nx, nz, order, threads, dtype, **more):
         (141, 40, Order(3, 40), 3),
         (250, 37, Order(5, 70), 2),
         (200, 38, Order(8, 1000), 2),
+        (700, 20, Order(2, 150), 2),
+        (1100, 18, Order(4, 200), 2),
+        (530, 18, Order(4, 100), 1),
         (60, 22, Order(4, 30), 2),
         (LEAST, 60, Order(8, 20), 3),
         (60, LEAST, Order(8, 20), 2),
@@ -91,7 +94,7 @@ def test_strips_and_wedges_cover_every_column_once_a_stage(width, strip, blocks,
     for stage in range(stages):
         visits = np.zeros(width, dtype=int)
         for bounds, slopes in [pair for group in groups for pair in group]:
-            at = bounds + slopes * stage
+            at = np.array([marching.bound_at.py_func(j, stage, bounds, slopes) for j in range(len(bounds))], dtype=int)
             assert (np.diff(at) >= 0).all()
             for a, b in zip(at[:-1], at[1:], strict=True):
                 visits[a:b] += 1

@@ -15,7 +15,7 @@ and (1 - PARALLEL) d stretches the normal axis: the multi-axial layer of Meza-Fa
 
 import numpy as np
 
-from groundroll.waves.state import Layers, Sides
+from groundroll.waves.state import Layers, Sides, aligned_span
 
 CELLS = 20
 REFLECTION = 1e-4
@@ -52,7 +52,7 @@ def sides(mesh, speed, shift, dt, dtype) -> Sides:
     """Set up the absorbing columns of `mesh`; none where a side does not absorb."""
     left, right = mesh.absorbing[0], mesh.absorbing[1]
     # One column more on each side: the half point beyond a node of the bound lies in the layer.
-    left_end, right_start = left, mesh.nx - right - (1 if right else 0)
+    left_end, right_start = aligned_span(left, mesh.nx - right - (1 if right else 0))
     u = _axis(mesh.nx, left, right)
     window = np.r_[0:left_end, right_start : mesh.nx]
     thickness = mesh.spacing * max(left, right, 1)

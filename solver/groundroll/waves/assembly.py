@@ -9,7 +9,7 @@ from groundroll.waves.cell import BAND, INTERIOR, MARGIN_COLUMNS, MARGIN_ROWS
 from groundroll.waves.mesh import Mesh
 from groundroll.waves.operators import CLOSED_NODES
 from groundroll.waves.attenuation import Loss, memory
-from groundroll.waves.state import Columns, Ground, Material, Rows, flat_zeros, frame, inner
+from groundroll.waves.state import Columns, Ground, Material, Rows, aligned_span, flat_zeros, frame, inner
 from groundroll.waves.terrain import kernel_terrain, row_interpolation, softened
 
 U = np.uint64
@@ -106,7 +106,7 @@ def material(mesh: Mesh, p: Properties, dt: float, dtype) -> Material:
     return Material(*flat, even)
 
 
-def rows(mesh: Mesh, absorbing_rows: np.ndarray, elastic: bool, dtype) -> Rows:
+def rows(mesh: Mesh, absorbing_rows: np.ndarray, dtype) -> Rows:
     """Set up the z derivatives; `absorbing_rows` (nz,) marks rows inside an absorbing layer."""
     line = mesh.rows
     stretch = np.stack([mesh.stretch_node, mesh.stretch_half])
@@ -123,8 +123,7 @@ def rows(mesh: Mesh, absorbing_rows: np.ndarray, elastic: bool, dtype) -> Rows:
         weight=weight.astype(dtype),
         node=node.astype(dtype),
         half=half.astype(dtype),
-        plain_velocity=plain.astype(np.uint8),
-        plain_stress=(plain & elastic).astype(np.uint8),
+        plain=plain.astype(np.uint8),
         lag=lag_of(mesh),
     )
 
@@ -145,11 +144,14 @@ def reach_in_bands(first: np.ndarray, weight: np.ndarray) -> int:
     return int(away[(weight != 0.0) & (read >= 0) & (read < weight.shape[1])].max())
 
 
-def columns(mesh: Mesh, sides, dtype) -> Columns:
-    """Set up the x derivatives."""
+def columns(mesh: Mesh, sides, elastic: bool, dtype) -> Columns:
+    """Set up the x derivatives; in elastic ground the fast kernels also serve the absorbing columns."""
     closed_left = CLOSED_NODES if mesh.edges[0] != "absorb" else 0
     closed_right = mesh.nx - (CLOSED_NODES if mesh.edges[1] != "absorb" else 0)
-    left, right = max(closed_left, int(sides.left)), min(closed_right, int(sides.right))
+    left, right = closed_left, closed_right
+    if not elastic:
+        left, right = max(left, int(sides.left)), min(right, int(sides.right))
+    left, right = aligned_span(left, right)
     line = mesh.columns
     return Columns(
         c=np.array(INTERIOR, dtype=dtype),
@@ -169,10 +171,10 @@ def assemble(mesh: Mesh, p: Properties, dt: float, damping: EdgeDamping, dtype, 
     return Ground(
         frame=frame(mesh),
         material=material(mesh, p, dt, dtype),
-        rows=rows(mesh, layers.index >= 0, loss is None, dtype),
-        columns=columns(mesh, sides, dtype),
+        rows=rows(mesh, layers.index >= 0, dtype),
+        columns=columns(mesh, sides, loss is None, dtype),
         sides=sides,
         layers=layers,
         terrain=kernel_terrain(mesh, dtype),
-        memory=memory(mesh, loss, dt, dtype),
+        memory=memory(mesh, p, loss, dt, dtype),
     )

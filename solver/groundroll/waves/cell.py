@@ -35,6 +35,8 @@ INTERIOR = (75.0 / 64.0, -25.0 / 384.0, 3.0 / 640.0)
 
 # Columns by which one stage reaches beyond the cell it updates, on level ground and under terrain.
 REACH, TERRAIN_REACH = 3, 4
+# Entries of a cache line in single precision: where rows of the fast kernels begin and end, for speed alone.
+ALIGNED = 16
 # Rows per band: the row kernels advance two rows at once, which shares loads between them.
 BAND = 2
 # Rows of scratch that the general kernels work in.

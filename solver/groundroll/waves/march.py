@@ -2,11 +2,12 @@
 
 from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
+from itertools import pairwise
 from pathlib import Path
 
 import numpy as np
 
-from groundroll.waves.cell import BAND, MECHANISMS, REACH, SCRATCH_ROWS, TERRAIN_REACH
+from groundroll.waves.cell import ALIGNED, BAND, MECHANISMS, REACH, SCRATCH_ROWS, TERRAIN_REACH
 from groundroll.waves.marching import plain_pass, strip_pass
 from groundroll.waves.points import Receivers, Sources
 from groundroll.waves.state import Fields, Ground
@@ -46,32 +47,44 @@ def fitting_order(ground: Ground, width: int, itemsize: int, threads: int, cache
     """
     arrays = ELASTIC_ARRAYS + MEMORY_ARRAYS * (ground.memory.count > 0) + TERRAIN_ARRAYS * (ground.terrain.rows > 0)
     share = CACHE_SHARE * (cache or last_cache()) / threads
-    for steps in (16, 8, 4, 2):
-        stages = ground.frame.phases * steps
-        strip = int(share / (BAND * ground.rows.lag * stages * arrays * itemsize))
-        if steps == 2 or (strip >= LEAST_STRIP and width >= threads * 4 * TERRAIN_REACH * stages):
-            return Order(steps, max(strip, LEAST_STRIP))
+    for move in (ALIGNED, TERRAIN_REACH):
+        for steps in (16, 8, 4):
+            stages = ground.frame.phases * steps
+            strip = int(share / (BAND * ground.rows.lag * stages * arrays * itemsize))
+            if strip >= LEAST_STRIP and width >= threads * 4 * move * stages:
+                return Order(steps, strip)
+    return Order(2, LEAST_STRIP)
 
 
 def strip_blocks(width: int, strip: int, blocks: int, stages: int, reach: int):
     """Return (bounds, slopes) of each block of strips, and of the wedges between the blocks.
 
-    A block's outer bounds stand still at the ends of the mesh and shrink `reach` columns per stage where
-    it meets another block; bounds inside move left. A block is at least wide enough to shrink.
+    A block's outer bounds stand still at the ends of the mesh and move inward by a stage's reach where it meets
+    another block; bounds inside move left. Where there is room a bound moves by whole cache lines. A block is at
+    least wide enough to shrink.
     """
-    least = 2 * reach * stages + 1
-    blocks = max(1, min(blocks, width // least))
-    cuts = np.linspace(0, width, blocks + 1).astype(np.int64)
+    move = ALIGNED if width >= 4 * ALIGNED * stages * blocks else reach
+    blocks = max(1, min(blocks, width // (2 * move * stages + 1)))
+    cuts = on_lines(0, width, blocks)
     result = []
-    for low, high in zip(cuts[:-1], cuts[1:], strict=True):
-        count = max(1, min(round((high - low) / strip), (high - low) // least))
-        bounds = np.linspace(low, high, count + 1).astype(np.int64)
-        slopes = np.full(count + 1, -reach)
-        slopes[0] = reach if low > 0 else 0
-        slopes[-1] = -reach if high < width else 0
+    for low, high in pairwise(cuts):
+        bounds = on_lines(low, high, max(1, round((high - low) / strip)))
+        slopes = np.full(len(bounds), -move)
+        slopes[0] = move if low > 0 else 0
+        slopes[-1] = -move if high < width else 0
         result.append((bounds, slopes))
-    wedges = [(np.array([cut, cut]), np.array([-reach, reach])) for cut in cuts[1:-1]]
+    wedges = [(np.array([cut, cut]), np.array([-move, move])) for cut in cuts[1:-1]]
     return result, wedges
+
+
+def on_lines(low: int, high: int, parts: int) -> np.ndarray:
+    """Return the bounds of at most `parts` about equal parts of low..high, inside at whole cache lines.
+
+    Both ends keep a line or more to themselves: the columns of a closed edge read further than a stage's reach.
+    """
+    bounds = np.linspace(low, high, parts + 1).astype(np.int64)[1:-1]
+    bounds = np.unique(bounds - bounds % ALIGNED)
+    return np.array([low, *bounds[(bounds >= low + ALIGNED) & (bounds <= high - ALIGNED)], high])
 
 
 class March:

@@ -18,7 +18,8 @@ bands that any row reads up or down, closures included (`assembly.reach_in_bands
 
 import numpy as np
 
-from groundroll.waves.jit import entry, kernel
+from groundroll.waves.cell import ALIGNED
+from groundroll.waves.jit import entry, inline, kernel
 from groundroll.waves.kernels import force_band, strain_band, stress_band, velocity_band
 from groundroll.waves.points import add_sources, note_receivers
 
@@ -56,6 +57,15 @@ def plain_pass(first_step, steps, width, bands, ground, fields, sources, receive
             stage(number, first_step, np.uint64(band), a, b, ground, fields, sources, receivers, scratch)
 
 
+@inline
+def bound_at(j, number, bounds, slopes):
+    """Return bound j at a stage. One that comes near the first joins it: the columns of a closed edge read
+    further than a stage's reach, so they are never cut off from what they read."""
+    first, bound = bounds[0] + slopes[0] * number, bounds[j] + slopes[j] * number
+    inside = 0 < j and j < len(bounds) - 1
+    return np.uint64(first if inside and bound < first + ALIGNED else bound)
+
+
 @entry
 def strip_pass(bounds, slopes, first_step, steps, bands, ground, fields, sources, receivers, scratch):
     """Advance `steps` steps inside each strip in turn.
@@ -67,7 +77,8 @@ def strip_pass(bounds, slopes, first_step, steps, bands, ground, fields, sources
         for wave in range(bands + lag * (stages - 1)):
             earliest = max(0, (wave - bands + lag) // lag)
             for number in range(earliest, min(stages, wave // lag + 1)):
-                a = np.uint64(bounds[j] + slopes[j] * number)
-                b = np.uint64(bounds[j + 1] + slopes[j + 1] * number)
+                a = bound_at(j, number, bounds, slopes)
+                b = bound_at(j + 1, number, bounds, slopes)
                 band = np.uint64(wave - lag * number)
-                stage(number, first_step, band, a, b, ground, fields, sources, receivers, scratch)
+                if a < b:
+                    stage(number, first_step, band, a, b, ground, fields, sources, receivers, scratch)

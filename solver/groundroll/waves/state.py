@@ -7,7 +7,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from groundroll.waves.cell import MARGIN_COLUMNS, MARGIN_ROWS
+from groundroll.waves.cell import ALIGNED, MARGIN_COLUMNS, MARGIN_ROWS
 
 
 class Fields(NamedTuple):
@@ -46,8 +46,7 @@ class Rows(NamedTuple):
     weight: np.ndarray
     node: np.ndarray
     half: np.ndarray
-    plain_velocity: np.ndarray
-    plain_stress: np.ndarray
+    plain: np.ndarray
     lag: int
 
 
@@ -131,22 +130,19 @@ class Terrain(NamedTuple):
 class Memory(NamedTuple):
     """Attenuation, see `memory_kernels.py`; `count` mechanisms, 0 where nothing damps.
 
-    `decay`, `gain` (count,): E_l and 1 - E_l; `y_old`, `z_old` (count,): shapes times the weight of the old xi in
-    the mean of a step, `y_new`, `z_new` (1,): the weight of the strain there; `xi` (3 count, flat): memory variables of exx, ezz, 2exz; `p1`, `p2`,
-    `s1`, `s2` at nodes and `h1`, `h2` at sxz: coefficients of both shapes, flat."""
+    `decay` (count,): E_l; `y`, `z` (count + 1,): weights of both shapes for the old x_l and, last, for the strain
+    rate; `xi`: 3 count flat arrays, x_l of exx, then of ezz, then of 2exz; `p1`, `p2` and `w1`, `w2` at nodes,
+    `h1`, `h2` at sxz: coefficients of both shapes for P, half of P less S, and S, flat."""
 
     count: int
     decay: np.ndarray
-    gain: np.ndarray
-    y_old: np.ndarray
-    y_new: np.ndarray
-    z_old: np.ndarray
-    z_new: np.ndarray
-    xi: np.ndarray
+    y: np.ndarray
+    z: np.ndarray
+    xi: tuple[np.ndarray, ...]
     p1: np.ndarray
     p2: np.ndarray
-    s1: np.ndarray
-    s2: np.ndarray
+    w1: np.ndarray
+    w2: np.ndarray
     h1: np.ndarray
     h2: np.ndarray
 
@@ -174,6 +170,12 @@ def flat_zeros(mesh, count: int, dtype) -> list[np.ndarray]:
     block = np.zeros(count * step + 16, dtype=dtype)
     skip = (-block.ctypes.data // block.itemsize) % 16
     return [block[skip + a * step : skip + a * step + size] for a in range(count)]
+
+
+def aligned_span(first: int, end: int) -> tuple[int, int]:
+    """Return columns first..end-1 narrowed to whole cache lines, as they are if no line is left."""
+    low, high = first + -first % ALIGNED, end - end % ALIGNED
+    return (low, high) if low < high else (first, end)
 
 
 def inner(flat: np.ndarray, mesh) -> np.ndarray:

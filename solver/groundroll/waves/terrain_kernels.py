@@ -20,6 +20,7 @@ Scratch rows here are counted in padded columns (margin + i), so that stencils m
 
 import numpy as np
 
+from groundroll.waves.access import GROUND, HELPERS, STRESS, VELOCITY, WORK, at, put
 from groundroll.waves.jit import inline, kernel
 from groundroll.waves.stencils import interpolate_rows, sum_columns, sum_rows
 
@@ -42,18 +43,24 @@ def force_helpers(k, a, b, ground, f, scratch):
     start = ground.frame.origin - margin + k * pitch
     a, b = a + margin, b + margin
     p, r = scratch[0], scratch[1]
-    interpolate_rows(p, f.sxx, t.first[FROM_NODES, k], t.blended[FROM_NODES, k], a - THREE, b + FOUR, pitch)
-    for j in range(a - THREE, b + FOUR):
-        p[j] *= t.slope[0, j]
+    interpolate_rows(p, f.sxx, STRESS, t.first[FROM_NODES, k], t.blended[FROM_NODES, k], a - THREE, b + FOUR, pitch)
+    times_slope(p, a - THREE, b + FOUR, t, 0)
     sum_columns(r, p, THREE, t.across, a, b)
     for j in range(a, b):
-        t.tx[start + j] = f.sxz[start + j] - r[j]
-    interpolate_rows(p, f.sxz, t.first[FROM_HALVES, k], t.blended[FROM_HALVES, k], a - FOUR, b + THREE, pitch)
-    for j in range(a - FOUR, b + THREE):
-        p[j] *= t.slope[1, j]
+        put(t.tx, start + j, at(f.sxz, start + j, STRESS) - at(r, j, WORK), HELPERS)
+    interpolate_rows(p, f.sxz, STRESS, t.first[FROM_HALVES, k], t.blended[FROM_HALVES, k], a - FOUR, b + THREE, pitch)
+    times_slope(p, a - FOUR, b + THREE, t, 1)
     sum_columns(r, p, FOUR, t.across, a, b)
     for j in range(a, b):
-        t.tz[start + j] = f.szz[start + j] - r[j]
+        put(t.tz, start + j, at(f.szz, start + j, STRESS) - at(r, j, WORK), HELPERS)
+
+
+@inline
+def times_slope(p, a, b, t, half_column):
+    """p *= slope on padded columns a..b-1."""
+    slope = t.slope[half_column]
+    for j in range(a, b):
+        put(p, j, at(p, j, WORK) * at(slope, j, GROUND), WORK)
 
 
 @kernel
@@ -61,8 +68,8 @@ def strain_helpers(k, a, b, ground, f):
     """Form gx = Dh vx and gz = Dn vz of one row on columns a..b-1, not divided by J."""
     t, pitch = ground.terrain, ground.frame.pitch
     base = ground.frame.origin + k * pitch
-    sum_rows(t.gz[base:], f.vz, t.operator_first[0, k], t.operator[0, k], a, b, pitch)
-    sum_rows(t.gx[base:], f.vx, t.operator_first[1, k], t.operator[1, k], a, b, pitch)
+    sum_rows(t.gz[base:], HELPERS, f.vz, VELOCITY, t.operator_first[0, k], t.operator[0, k], a, b, pitch)
+    sum_rows(t.gx[base:], HELPERS, f.vx, VELOCITY, t.operator_first[1, k], t.operator[1, k], a, b, pitch)
 
 
 @kernel
@@ -70,22 +77,23 @@ def times_stretch(out, f, k, a, b, half, ground):
     """out = J f of one row at nodes (half 0) or at sxz (half 1), three columns beyond a..b-1 on both sides."""
     t, margin = ground.terrain, ground.frame.margin
     start = ground.frame.origin - margin + k * ground.frame.pitch
+    rise, shift, bend = t.rise[half, k], t.shift[half], t.bend[half, k]
     for j in range(a + margin - THREE, b + margin + THREE):
-        out[j] = f[start + j] * stretch(t, k, j, half, half)
+        put(out, j, at(f, start + j, STRESS) * (rise + at(shift, j, GROUND) * bend), WORK)
 
 
 @kernel
 def depth_force_x(out, k, a, b, ground):
     """out = An Tx of one row."""
     t = ground.terrain
-    sum_rows(out, t.tx, t.operator_first[2, k], t.operator[2, k], a, b, ground.frame.pitch)
+    sum_rows(out, WORK, t.tx, HELPERS, t.operator_first[2, k], t.operator[2, k], a, b, ground.frame.pitch)
 
 
 @kernel
 def depth_force_z(out, k, a, b, ground):
     """out = Ah Tz of one row."""
     t = ground.terrain
-    sum_rows(out, t.tz, t.operator_first[3, k], t.operator[3, k], a, b, ground.frame.pitch)
+    sum_rows(out, WORK, t.tz, HELPERS, t.operator_first[3, k], t.operator[3, k], a, b, ground.frame.pitch)
 
 
 @kernel
@@ -94,14 +102,16 @@ def depth_strain_normal(ex, ez, k, a, b, ground, scratch):
     t, margin, pitch = ground.terrain, ground.frame.margin, ground.frame.pitch
     start = ground.frame.origin - margin + k * pitch
     p, r = scratch[3], scratch[4]
-    interpolate_rows(p, t.gx, t.first[FROM_HALVES, k], t.plain[FROM_HALVES, k], a + margin - FOUR, b + margin + THREE, pitch)
+    low, high = a + margin - FOUR, b + margin + THREE
+    interpolate_rows(p, t.gx, HELPERS, t.first[FROM_HALVES, k], t.plain[FROM_HALVES, k], low, high, pitch)
     sum_columns(r, p, FOUR, t.across, a + margin, b + margin)
+    slope, shift = t.slope[0], t.shift[0]
+    blend, rise, bend = t.blend[0, k], t.rise[0, k], t.bend[0, k]
     for i in range(a, b):
         j = i + margin
-        ex[i] -= t.slope[0, j] * t.blend[0, k] * r[j] / stretch(t, k, j, 0, 0)
-    for i in range(a, b):
-        j = i + margin
-        ez[i] = t.gz[start + j] / stretch(t, k, j, 0, 0)
+        over = rise + at(shift, j, GROUND) * bend
+        put(ex, i, at(ex, i, WORK) - at(slope, j, GROUND) * blend * at(r, j, WORK) / over, WORK)
+        put(ez, i, at(t.gz, start + j, HELPERS) / over, WORK)
 
 
 @kernel
@@ -110,8 +120,12 @@ def depth_strain_shear(g, k, a, b, ground, scratch):
     t, margin, pitch = ground.terrain, ground.frame.margin, ground.frame.pitch
     start = ground.frame.origin - margin + k * pitch
     p, r = scratch[3], scratch[4]
-    interpolate_rows(p, t.gz, t.first[FROM_NODES, k], t.plain[FROM_NODES, k], a + margin - THREE, b + margin + FOUR, pitch)
+    low, high = a + margin - THREE, b + margin + FOUR
+    interpolate_rows(p, t.gz, HELPERS, t.first[FROM_NODES, k], t.plain[FROM_NODES, k], low, high, pitch)
     sum_columns(r, p, THREE, t.across, a + margin, b + margin)
+    slope, shift = t.slope[1], t.shift[1]
+    blend, rise, bend = t.blend[1, k], t.rise[1, k], t.bend[1, k]
     for i in range(a, b):
         j = i + margin
-        g[i] += (t.gx[start + j] - t.slope[1, j] * t.blend[1, k] * r[j]) / stretch(t, k, j, 1, 1)
+        rest = at(t.gx, start + j, HELPERS) - at(slope, j, GROUND) * blend * at(r, j, WORK)
+        put(g, i, at(g, i, WORK) + rest / (rise + at(shift, j, GROUND) * bend), WORK)
