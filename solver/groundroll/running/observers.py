@@ -20,11 +20,11 @@ def even_steps(count: int, last: int) -> list[int]:
 
 
 class Seismograms:
-    """Writes all records so far, corrected, a few times during the run and at its end."""
+    """Writes all records so far, corrected, at half time and at the end."""
 
     def __init__(self, writer: RecordsWriter, lines, quantities, times: np.ndarray, steps: int):
         self._writer, self._lines, self._quantities, self._times = writer, lines, quantities, times
-        self.due = even_steps(4, steps)
+        self.due = even_steps(2, steps)
 
     def see(self, simulation: Simulation) -> None:
         done = simulation.step * simulation.clock.dt
@@ -70,12 +70,14 @@ class Totals:
     """Keeps the ledger of momentum and energy, and stops a run whose energy is no longer a number."""
 
     COUNT = 40
+    # Noting the totals takes as long as some six steps.
+    APART = 200
 
     def __init__(self, writer: RecordsWriter, simulation: Simulation):
         self._writer = writer
         self._ledger = Ledger(simulation.mesh, simulation.march, simulation.clock.dt)
         self._impulse = simulation.impulse()
-        self.due = even_steps(self.COUNT, simulation.clock.steps)
+        self.due = even_steps(min(self.COUNT, max(2, simulation.clock.steps // self.APART)), simulation.clock.steps)
 
     def see(self, simulation: Simulation) -> None:
         values = self._ledger.note()

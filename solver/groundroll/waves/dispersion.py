@@ -11,6 +11,8 @@ Andersson 2018, Geophys. J. Int. 213, 169.)
 import numpy as np
 
 _BLOCK = 4_000_000
+# Samples whose exponentials are formed one by one in a transform.
+_STRETCH = 512
 
 
 def scheme_frequency(true, dt):
@@ -44,11 +46,30 @@ def resynthesise(samples, times_in, omega_in, times_out, omega_out, weight, wave
     """
     dt = times_in[1] - times_in[0]
     out = np.zeros((len(samples), len(times_out)))
-    for block in _blocks(len(omega_in), max(len(times_in), len(times_out))):
-        forward = np.exp(-1j * np.outer(times_in, omega_in[block]))
-        spectrum = (samples @ forward) * (dt * weight[block])
+    for block in _blocks(len(omega_in), max(_STRETCH, len(times_out))):
+        spectrum = _spectrum(samples, times_in[0], dt, omega_in[block]) * (dt * weight[block])
         out += (spectrum @ waves(omega_out[block], times_out)).real
     return out
+
+
+def _spectrum(samples, first, dt, omega):
+    """Return sum_n samples_n exp(-i omega (first + n dt)), (trace, omega).
+
+    With n = STRETCH m + r the sum over m is Horner's rule in exp(-i omega STRETCH dt): only STRETCH exponentials
+    are formed for each omega, not one for each sample.
+    """
+    count, n = samples.shape
+    stretches = -(-n // _STRETCH)
+    padded = np.zeros((count, stretches * _STRETCH))
+    padded[:, :n] = samples
+    within = np.exp(-1j * np.outer(dt * np.arange(_STRETCH), omega))
+    pair = np.hstack([within.real, within.imag])
+    step = np.exp(-1j * dt * _STRETCH * omega)
+    total = np.zeros((count, len(omega)), dtype=complex)
+    for stretch in padded.reshape(count, stretches, _STRETCH).transpose(1, 0, 2)[::-1]:
+        real, imaginary = np.hsplit(stretch @ pair, 2)
+        total = total * step + real + 1j * imaginary
+    return total * np.exp(-1j * first * omega)
 
 
 def predistort(pulse, times_in, dt, steps, start=0.0, top=np.inf):
