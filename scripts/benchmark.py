@@ -3,6 +3,7 @@
 Rates in million cell-steps/s, medians of several repeats taken in turn, after warm-up:
     plain      the plain order: all bands of a stage, then all of the next
     fast       the fast order, as `groundroll run` uses it, with absorbing edges, a source, 50 receivers
+    run        the time loop of a whole `groundroll run`, files and snapshots every 200 steps included
     numpy      the same interior scheme by NumPy slices
     c          a plain C/OpenMP loop of the same order without edges or output, compiled on the spot if a
                compiler is there (or a program given by --peer that prints the same line)
@@ -20,6 +21,7 @@ from pathlib import Path
 
 import numpy as np
 
+from groundroll import Scenario, run
 from groundroll.running.choices import time_step
 from groundroll.running.machine import available_threads
 from groundroll.waves import pulses, relaxation
@@ -77,6 +79,48 @@ class Case:
         return self.cells * done / (time.perf_counter() - start) / 1e6
 
 
+class WholeRun:
+    """The time loop of `groundroll run` on about nz x nx cells with snapshots every 200 steps, written to files."""
+
+    def __init__(self, nz: int, nx: int, threads: int, steps: int = 2000):
+        dt = 0.95 * 0.5695 / 400.0
+        self.threads = threads
+        self.scenario = Scenario.from_text(f"""
+[section]
+length = {nx - 41}.0
+depth = {nz - 21}.0
+duration = {steps * dt}
+highest_frequency = 20.0
+[mesh]
+spacing = 1.0
+[[ground.layer]]
+vp = 400.0
+vs = 200.0
+density = 1800.0
+[[source]]
+name = "blast"
+kind = "explosion"
+x = {0.5 * nx}
+depth = {0.3 * nz}
+moment = 1e5
+pulse = {{ shape = "ricker", frequency = 10.0 }}
+[[receivers]]
+name = "line"
+from = [30.0, 0.0]
+to = [{nx - 80}.0, 0.0]
+count = 50
+[snapshots]
+every = {200 * dt}
+""")
+
+    def rate(self) -> float:
+        """Return million cell-steps/s of the loop: stepping, snapshots, ledger, seismograms."""
+        with tempfile.TemporaryDirectory() as folder:
+            records = run(self.scenario, out=Path(folder) / "run", threads=self.threads)
+            told = records.provenance
+        return told["mesh_cells"] * told["steps"] / (told["stepping_seconds"] + told["recording_seconds"]) / 1e6
+
+
 def numpy_rate(nz: int, nx: int) -> float:
     """The interior scheme by NumPy slices, one thread."""
     vx, vz, sxx, szz, sxz = (np.zeros((nz, nx), np.float32) for _ in range(5))
@@ -131,6 +175,7 @@ def compare(nz, nx, threads, repeats, program) -> dict:
         "fast, terrain": Case(nz, nx, threads, hilly=True),
         "fast, double": Case(nz, nx, threads, np.float64),
         "plain, 1 thread": Case(nz, nx, 1, order=PLAIN),
+        "run": WholeRun(nz, nx, threads),
     }
     found = {name: [] for name in kinds} | {"numpy": [numpy_rate(nz, nx)], "c": [], "stream GB/s": []}
     for _ in range(repeats):
@@ -174,6 +219,8 @@ def main() -> None:
 def ratios(rates: dict) -> dict:
     fast = rates["fast"]
     found = {f"fast over {name}": fast / rates[name] for name in ("c", "plain, 1 thread", "numpy") if name in rates}
+    if "c" in rates:
+        found["run over c"] = rates["run"] / rates["c"]
     if "stream GB/s" in rates:
         found["fast over streaming each array once"] = fast / (rates["stream GB/s"] * 1e3 / STREAMED_BYTES)
     found["attenuation over elastic"] = rates["fast, attenuation"] / fast

@@ -40,6 +40,8 @@ def parser() -> argparse.ArgumentParser:
     run.add_argument("scenarios", type=Path, nargs="+", metavar="SCENARIO")
     run.add_argument("--out", type=Path, metavar="FOLDER", help="folder of the results (default: outputs/<file stem>)")
     run.add_argument("--threads", type=threads, metavar="N", help="threads (default: all)")
+    order = "marching order: steps in a pass and columns in a strip (default: from the caches); changes the speed only"
+    run.add_argument("--order", type=positive, nargs=2, metavar=("STEPS", "COLUMNS"), help=order)
     run.set_defaults(do=do_run)
 
     draw = commands.add_parser("draw", parents=[quiet], help="draw the figures of a run")
@@ -55,6 +57,13 @@ def threads(text: str) -> int:
     if not 1 <= count <= 1024:
         raise argparse.ArgumentTypeError(f"{text!r} is not a number of threads; write a whole number from 1 to 1024, e.g. 2")
     return count
+
+
+def positive(text: str) -> int:
+    """Read a whole number above 0."""
+    if not text.isdigit() or int(text) < 1:
+        raise argparse.ArgumentTypeError(f"{text!r} is not a whole number above 0; write e.g. --order 8 2000")
+    return int(text)
 
 
 def say(options, text: str) -> None:
@@ -83,8 +92,10 @@ def do_plan(options) -> None:
 
 def do_run(options) -> int:
     from groundroll.running.many import run_all
+    from groundroll.waves.march import Order
 
-    return run_all(options.scenarios, options.out, options.threads, options.quiet)
+    order = Order(*options.order) if options.order else None
+    return run_all(options.scenarios, options.out, options.threads, options.quiet, order)
 
 
 def do_draw(options) -> None:

@@ -72,6 +72,16 @@ def test_a_bad_number_of_threads(ask, command, given):
     )
 
 
+@pytest.mark.parametrize("given", [("0", "2000"), ("8", "wide")])
+def test_a_bad_order(ask, given):
+    status, out, err = ask("run", "a.toml", "--order", *given)
+    wrong = next(word for word in given if not (word.isdigit() and int(word)))
+    assert (status, out) == (2, "")
+    assert err.splitlines()[-1] == (
+        f"groundroll run: error: argument --order: {wrong!r} is not a whole number above 0; write e.g. --order 8 2000"
+    )
+
+
 def test_no_command_and_an_unknown_one(ask):
     assert ask()[0] == 2
     status, _, err = ask("walk")

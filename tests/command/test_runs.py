@@ -46,6 +46,15 @@ def test_quiet_prints_nothing(shell):
     assert open_records(shell.folder / "here").complete
 
 
+def test_the_order_changes_no_bit(shell):
+    shell.write("a.toml")
+    for out, more in (("one", ()), ("other", ("--order", 3, 25))):
+        assert shell("run", "a.toml", "-q", "--threads", 2, "--out", out, *more).returncode == 0
+    one, other = (open_records(shell.folder / out).seismograms["line"] for out in ("one", "other"))
+    assert np.abs(one.velocity_z).max() > 0.0
+    np.testing.assert_array_equal(one.velocity_z, other.velocity_z)
+
+
 def test_one_of_two_fails_and_the_other_is_complete(shell):
     shell.write("wrong.toml", changed(SMALL, ("vs = 180.0", "vs = -1.0")))
     shell.write("right.toml")

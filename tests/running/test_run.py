@@ -66,7 +66,7 @@ def test_provenance_holds_what_the_contract_names(folder):
     assert found["mesh_cells"] == made.mesh.nx * made.mesh.nz
     assert (found["time_step"], found["steps"], found["threads"], found["precision"]) == (made.clock.dt, made.clock.steps, 1, "single")
     assert found["scenario_sha256"] == hashlib.sha256(SMALL.encode()).hexdigest()
-    assert found["stepping_seconds"] > 0.0 and found["compile_seconds"] >= 0.0
+    assert found["stepping_seconds"] > 0.0 and found["recording_seconds"] > 0.0 and found["compile_seconds"] >= 0.0
     assert found["version"] and np.datetime64(found["created"].removesuffix("+00:00")) > np.datetime64("2020-01-01")
     assert "downward" in found["axes"]
 

@@ -57,12 +57,12 @@ def spacing(ppw, vs=VS, frequency=FREQUENCY):
     return vs / (pulses.RICKER_BAND * frequency) / ppw
 
 
-def all_steps(mesh, ground, vp, sources, points, steps, dtype=np.float64, order=STRIPS, threads=1):
+def all_steps(mesh, ground, vp, sources, points, steps, dtype=np.float64, order=STRIPS, threads=1, loss=None):
     """A simulation of `steps` steps at 0.95 of the limit, ready to advance."""
     dt = COURANT * mesh.spacing / vp
     time = Clock(dt, steps, steps * dt, 6.0 * FREQUENCY)
     damping = EdgeDamping(vp, np.pi * FREQUENCY)
-    return Simulation(mesh, ground, damping, time, sources, points, dtype, order, threads)
+    return Simulation(mesh, ground, damping, time, sources, points, dtype, order, threads, loss)
 
 
 def interior(simulation_):

@@ -1,15 +1,21 @@
 """The row kernels: compiled or not, fast or general, they say the same."""
 
 import os
+import platform
+import re
 import subprocess
 import sys
 from pathlib import Path
 
+import numba
 import numpy as np
 import pytest
+from llvmlite.binding import get_host_cpu_features
 from numpy.testing import assert_allclose
 
 import groundroll
+from groundroll.waves import kernels, relaxation
+from groundroll.waves.attenuation import Loss
 from groundroll.waves.march import PLAIN, Order
 from groundroll.waves.mesh import even_mesh
 from groundroll.waves.simulation import PointSource
@@ -84,6 +90,65 @@ def test_fast_and_general_kernels_agree(edges, dtype, tolerance):
     assert fast.march.ground.rows.plain.sum() > 10
     for a, b in zip(_shares(fast), _shares(general), strict=True):
         assert_allclose(a, b, rtol=0, atol=tolerance)
+
+
+# Arithmetic in single precision as compiled code names it, by processor family: packed in wide registers, and scalar.
+PACKED = {"x86_64": r"\bv?(?:fn?m(?:add|sub)\d*|mul|add|sub)ps\b.*%[{}]mm", "aarch64": r"\bf(?:mla|mls|mul|add|sub)\s+v\d+\.4s"}
+SCALAR = {"x86_64": r"\bv?(?:fn?m(?:add|sub)\d*|mul|add|sub)ss\b", "aarch64": r"\bf(?:n?madd|n?msub|mul|add|sub)\s+s\d+"}
+MACHINE = {"AMD64": "x86_64", "arm64": "aarch64"}.get(platform.machine(), platform.machine())
+
+
+def counts(text) -> tuple[int, int]:
+    """Packed instructions of wide registers (256 bits or more where the processor has them), and scalar ones."""
+    wide = "yz" if get_host_cpu_features().get("avx", False) and MACHINE == "x86_64" else "x"
+    return len(re.findall(PACKED[MACHINE].format(wide), text)), len(re.findall(SCALAR[MACHINE], text))
+
+
+@pytest.mark.skipif(MACHINE not in PACKED, reason=f"no names of packed instructions known for {MACHINE}")
+@pytest.mark.parametrize("name", ["fast_velocity", "fast_stress", "fast_lossy_normal", "fast_lossy_shear"])
+def test_inner_loops_are_packed(name):
+    """Each loop exists in packed form; what is scalar is the remainder of a row, each loop once more."""
+    packed, scalar = counts(compiled(name, loss=name.startswith("fast_lossy")))
+    assert packed >= scalar > 0
+
+
+@pytest.mark.skipif(MACHINE not in PACKED, reason=f"no names of packed instructions known for {MACHINE}")
+def test_a_running_sum_is_not_packed():
+    """Mutation: what cannot be packed is counted as such."""
+
+    @numba.njit
+    def running(f):
+        for i in range(1, len(f)):
+            f[i] += f[i - 1] * f[i]
+
+    running(np.ones(4, np.float32))
+    packed, scalar = counts(running.inspect_asm(running.signatures[0]))
+    assert packed == 0 and scalar > 0
+
+
+def compiled(name, loss):
+    """The machine code of a fast kernel in single precision."""
+    mesh = even_mesh(1.0, 60.0, 50.0, FREE_TOP, 4)
+    run = all_steps(mesh, rough(mesh, 400.0), 400.0, [], [], 1, np.float32, loss=small_loss() if loss else None)
+    ground, fields = run.march.ground, run.march.fields
+    m, one = ground.material, np.uint64(1)
+    z = ground.rows.node[10] if loss else ground.rows.node[10:12]
+    rest = {
+        "fast_velocity": (z, z, fields, m.bx, m.bz),
+        "fast_stress": (z, z, fields, m.c11, m.c13, m.c33, m.mu),
+        "fast_lossy_normal": (z, fields, m.c11, m.c13, m.c33, ground.memory),
+        "fast_lossy_shear": (z, fields, m.mu, ground.memory),
+    }[name]
+    arguments = (one, one, ground.frame.pitch, ground.columns.c, *rest)
+    kernel = numba.njit(error_model="numpy", fastmath={"contract"}, _nrt=False)(getattr(kernels, name).py_func)
+    kernel(*arguments)
+    return kernel.inspect_asm(kernel.signatures[0])
+
+
+def small_loss() -> Loss:
+    omega = relaxation.band_frequencies(1.0, 100.0)
+    some = np.ones((2, 1, 1))
+    return Loss(omega, relaxation.shapes(omega, 1.0, 100.0), 0.1 * some, 0.1 * some, 0.1 * some)
 
 
 def test_fast_kernels_are_what_ran():

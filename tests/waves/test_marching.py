@@ -6,8 +6,9 @@ from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 from numpy.testing import assert_array_equal
 
-from groundroll.waves import assembly, march, marching
-from groundroll.waves.march import PLAIN, Order, strip_blocks
+from groundroll.waves import assembly, march
+from groundroll.waves.cell import ALIGNED
+from groundroll.waves.march import PLAIN, Order, strip_bounds
 from groundroll.waves.mesh import even_mesh
 from groundroll.waves.simulation import PointSource
 
@@ -87,18 +88,21 @@ def test_any_mesh_and_any_order(edges, nx, nz, steps, strip, threads, layer, pos
 
 
 @pytest.mark.parametrize("stages", [2, 8, 16])
-@pytest.mark.parametrize("blocks", [1, 2, 3])
-@pytest.mark.parametrize(("width", "strip"), [(40, 20), (333, 50), (1000, 768), (2000, 100)])
-def test_strips_and_wedges_cover_every_column_once_a_stage(width, strip, blocks, stages):
-    groups = strip_blocks(width, strip, blocks, stages, 3)
-    for stage in range(stages):
-        visits = np.zeros(width, dtype=int)
-        for bounds, slopes in [pair for group in groups for pair in group]:
-            at = np.array([marching.bound_at.py_func(j, stage, bounds, slopes) for j in range(len(bounds))], dtype=int)
-            assert (np.diff(at) >= 0).all()
-            for a, b in zip(at[:-1], at[1:], strict=True):
-                visits[a:b] += 1
-        assert_array_equal(visits, 1)
+@pytest.mark.parametrize("threads", [1, 2, 3])
+@pytest.mark.parametrize(("width", "strip"), [(17, 8), (40, 20), (333, 50), (1000, 768), (2000, 100)])
+def test_strips_have_room_and_share_the_columns(width, strip, threads, stages):
+    bounds, move = strip_bounds(width, strip, threads, stages, 3)
+    assert bounds[0] == 0 and bounds[-1] == width
+    if len(bounds) == 2:
+        return
+    assert move in (3, ALIGNED)
+    last = bounds.copy()
+    last[1:-1] -= move * (stages - 1)
+    # Inside, a line stays between a bound and both ends of the mesh, and a strip is wider than its bounds move.
+    assert last[1] >= ALIGNED and bounds[-2] <= width - ALIGNED
+    assert (np.diff(bounds)[1:-1] > move * (stages - 1) + 3).all()
+    mean = 0.5 * (np.diff(bounds) + np.diff(last))
+    assert mean.max() - mean.min() <= 2 * ALIGNED
 
 
 @pytest.mark.parametrize("what", ["reach", "lag"])

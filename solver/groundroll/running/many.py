@@ -7,6 +7,7 @@ from groundroll.errors import GroundrollError, InputError, Interrupted
 from groundroll.running.run import run
 from groundroll.running.summary import peaks_table
 from groundroll.scenario import Scenario
+from groundroll.waves.march import Order
 
 DEFAULT_FOLDER = Path("outputs")
 
@@ -25,16 +26,16 @@ def folders_for(files: list[Path], out: Path | None) -> list[Path]:
     return folders
 
 
-def run_all(files: list[Path], out: Path | None, threads: int | None, quiet: bool) -> int:
+def run_all(files: list[Path], out: Path | None, threads: int | None, quiet: bool, order: Order | None = None) -> int:
     """Run all scenarios and return the exit status: that of a single one, or 1 if any of several failed."""
     folders = folders_for(files, out)
     if len(files) == 1:
-        run_one(files[0], folders[0], threads, quiet)
+        run_one(files[0], folders[0], threads, quiet, order)
         return 0
     outcomes = []
     for file, folder in zip(files, folders, strict=True):
         try:
-            run_one(file, folder, threads, quiet)
+            run_one(file, folder, threads, quiet, order)
             outcomes.append("done")
         except Interrupted:
             raise
@@ -48,9 +49,9 @@ def run_all(files: list[Path], out: Path | None, threads: int | None, quiet: boo
     return 0 if all(o == "done" for o in outcomes) else 1
 
 
-def run_one(file: Path, folder: Path, threads: int | None, quiet: bool) -> None:
+def run_one(file: Path, folder: Path, threads: int | None, quiet: bool, order: Order | None) -> None:
     scenario = Scenario.load(file)
-    records = run(scenario, out=folder, threads=threads, quiet=quiet)
+    records = run(scenario, out=folder, threads=threads, quiet=quiet, order=order)
     if not quiet:
         print(peaks_table(records))
         print(f"records in {folder}; figures: groundroll draw {folder}")

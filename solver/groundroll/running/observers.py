@@ -70,14 +70,13 @@ class Totals:
     """Keeps the ledger of momentum and energy, and stops a run whose energy is no longer a number."""
 
     COUNT = 40
-    # Noting the totals takes as long as some six steps.
-    APART = 200
 
     def __init__(self, writer: RecordsWriter, simulation: Simulation):
         self._writer = writer
         self._ledger = Ledger(simulation.mesh, simulation.march, simulation.clock.dt)
         self._impulse = simulation.impulse()
-        self.due = even_steps(min(self.COUNT, max(2, simulation.clock.steps // self.APART)), simulation.clock.steps)
+        self.warm_up = self._ledger.warm_up
+        self.due = even_steps(self.COUNT, simulation.clock.steps)
 
     def see(self, simulation: Simulation) -> None:
         values = self._ledger.note()

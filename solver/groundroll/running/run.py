@@ -19,11 +19,16 @@ from groundroll.running.plan import Plan, plan, room_for
 from groundroll.running.progress import progress_for
 from groundroll.scenario import Scenario
 from groundroll.waves.assembly import EdgeDamping
+from groundroll.waves.march import Order
 from groundroll.waves.simulation import PointSource, Simulation
 
 
-def run(scenario: Scenario, out: str | Path | None = None, threads: int | None = None, quiet: bool = True) -> Records:
+def run(
+    scenario: Scenario, out: str | Path | None = None, threads: int | None = None, quiet: bool = True, order: Order | None = None
+) -> Records:
     """Compute `scenario` and return its records, written to the folder `out` or kept in memory (None).
+
+    `threads` and the marching `order` change the speed and not a bit of the records; both are chosen if not given.
 
     Raises InputError before anything is written, ComputationError if the fields blow up, StorageError if
     records cannot be written, Interrupted on Ctrl-C; what was recorded until then is kept in the folder.
@@ -43,7 +48,7 @@ def run(scenario: Scenario, out: str | Path | None = None, threads: int | None =
             (folder / "resolved.toml").write_text(texts["resolved"], encoding="utf-8")
             (folder / "run.log").write_text(f"{made}\n", encoding="utf-8")
         writer.put_scene(**scene.describe(made))
-        seconds = compute(made, lines, frame, writer, threads, quiet)
+        seconds = compute(made, lines, frame, writer, threads, quiet, order)
         writer.finish(True, **seconds)
         if folder is not None:
             note_end(folder, made, seconds)
@@ -100,30 +105,31 @@ def point_sources(made: Plan) -> list[PointSource]:
     return found
 
 
-def set_up(made: Plan, lines, threads: int) -> Simulation:
+def set_up(made: Plan, lines, threads: int, order: Order | None = None) -> Simulation:
     """Sample the ground and place everything on the mesh."""
     points = [(x, depth) for line in lines for x, depth in zip(line.x, line.depth, strict=True)]
     damping = EdgeDamping(made.fastest, np.pi * made.scenario.section.highest_frequency / PEAK_TO_HIGHEST)
     properties, loss = sample(made.model, made.mesh, made.losses)
     sources = point_sources(made)
-    return Simulation(made.mesh, properties, damping, made.clock, sources, points, made.dtype, threads=threads, loss=loss)
+    return Simulation(made.mesh, properties, damping, made.clock, sources, points, made.dtype, order, threads, loss)
 
 
-def compute(made: Plan, lines, frame, writer: RecordsWriter, threads: int, quiet: bool) -> dict:
+def compute(made: Plan, lines, frame, writer: RecordsWriter, threads: int, quiet: bool, order: Order | None) -> dict:
     """Step through the run, calling each observer at its steps; return the seconds spent."""
-    simulation = set_up(made, lines, threads)
+    simulation = set_up(made, lines, threads, order)
     writer.put_ground(*scene.ground_arrays(made, simulation.properties))
     announce_compiling(quiet)
-    compile_seconds = simulation.warm_up()
+    totals = Totals(writer, simulation)
+    compile_seconds = simulation.warm_up() + totals.warm_up()
     times = choices.sample_times(made.scenario)
-    observers = [Totals(writer, simulation), Seismograms(writer, lines, made.scenario.output.quantities, times, made.clock.steps)]
+    observers = [totals, Seismograms(writer, lines, made.scenario.output.quantities, times, made.clock.steps)]
     if frame is not None:
         every = made.scenario.snapshots.every
         observers.append(Snapshots(writer, frame, every, made.clock.duration, made.clock.dt))
     progress = progress_for(made.clock.steps, made.mesh.cells, quiet)
     observers.append(progress)
     try:
-        stepping = march_through(simulation, observers)
+        stepping, recording = march_through(simulation, observers)
     except KeyboardInterrupt:
         observers[1].see(simulation)
         done = simulation.step * made.clock.dt
@@ -132,7 +138,7 @@ def compute(made: Plan, lines, frame, writer: RecordsWriter, threads: int, quiet
         progress.close()
         simulation.close()
     machine.remember_rate(made.mesh.cells * made.clock.steps / max(stepping, 1e-9), threads)
-    return {"stepping_seconds": stepping, "compile_seconds": compile_seconds}
+    return {"stepping_seconds": stepping, "recording_seconds": recording, "compile_seconds": compile_seconds}
 
 
 def announce_compiling(quiet: bool) -> None:
@@ -140,26 +146,28 @@ def announce_compiling(quiet: bool) -> None:
         print("compiling the kernels: half a minute or so, once for this version", flush=True)
 
 
-def march_through(simulation: Simulation, observers) -> float:
-    """Advance to the end, stopping at every step that an observer has asked for; return seconds of stepping.
+def march_through(simulation: Simulation, observers) -> tuple[float, float]:
+    """Advance to the end, stopping at every step that an observer has asked for.
+
+    Return the seconds of stepping and those of the observers.
 
     Raises KeyboardInterrupt after the pass, or the observers' call, during which the user pressed Ctrl-C.
     """
     stops = sorted({step for o in observers for step in o.due if step < simulation.clock.steps} | {simulation.clock.steps})
     waiting = {id(o): set(o.due) for o in observers}
-    stepping = 0.0
+    stepping, begun = 0.0, time.perf_counter()
     with Interruption() as interruption:
         for stop in stops:
             start = time.perf_counter()
             while simulation.step < stop:
-                simulation.advance(min(simulation.longest_pass, stop - simulation.step))
+                simulation.advance(min(simulation.longest_call, stop - simulation.step))
                 interruption.obey()
             stepping += time.perf_counter() - start
             for observer in observers:
                 if stop in waiting[id(observer)]:
                     observer.see(simulation)
             interruption.obey()
-    return stepping
+    return stepping, time.perf_counter() - begun - stepping
 
 
 def note_end(folder: Path, made: Plan, seconds: dict) -> None:

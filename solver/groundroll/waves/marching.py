@@ -8,30 +8,36 @@ needs them:
     wave w visits, for stage s = 0, 1, ..., the band  w - lag s      (a wavefront running down the rows)
     stage s of a strip covers columns  left + left_slope s  ...  right + right_slope s - 1.
 
-A stage reads what earlier stages wrote up to its reach (`cell.py`) away. Neighbouring strips are skewed, each
-bound moving the reach of a stage to the left per stage, and go from left to right: what a strip still needs
-from its left neighbour has not been overwritten, since the neighbour has stopped one reach short
-for each stage it is ahead. Threads take blocks of strips; a block's own left bound moves right instead,
-and when all blocks are done the wedges left between them are filled the same way. The lag is the number of
+A stage reads what earlier stages wrote up to its reach (`cell.py`) away. The bounds between strips move the
+reach of a stage or more to the left per stage: what a strip needs of its left neighbour has then not been
+overwritten, since the neighbour has stopped a reach short for each stage it is ahead. The lag is the number of
 bands that any row reads up or down, closures included (`assembly.reach_in_bands`).
+
+Threads take neighbouring strips and go through pass after pass, each strip keeping in step with its neighbours:
+
+    wave w of a pass begins when the left strip has done wave w of this pass (it then reads what it must find
+    there, and nothing that it will overwrite is still to be read), and when the right strip has
+    done all of the pass before that acts on the bands near w, its last stage running lag (stages - 1) behind.
 """
 
 import numpy as np
 
-from groundroll.waves.cell import ALIGNED
+from groundroll.waves.handover import publish, wait_for
 from groundroll.waves.jit import entry, inline, kernel
 from groundroll.waves.kernels import force_band, strain_band, stress_band, velocity_band
 from groundroll.waves.points import add_sources, note_receivers
 
 
 @kernel
-def stage(number, first_step, band, a, b, ground, fields, sources, receivers, scratch):
+def stage(number, first_step, first_noted, band, a, b, ground, fields, sources, receivers, scratch):
     """Do stage `number` of a pass that begins at step `first_step`, on one band, columns a..b-1.
+
+    Receivers' traces begin at step `first_noted`.
 
     A time step has the phases velocity, stress; under terrain force helpers, velocity, strain helpers, stress.
     """
     phases = ground.frame.phases
-    step, phase = number // phases, number % phases
+    step, phase = first_step + number // phases, number % phases
     if phases == 4:
         if phase == 0:
             force_band(band, a, b, ground, fields, scratch)
@@ -41,11 +47,11 @@ def stage(number, first_step, band, a, b, ground, fields, sources, receivers, sc
             return
     if phase == phases // 2 - 1:
         velocity_band(band, a, b, ground, fields, scratch)
-        add_sources(band, a, b, first_step + step, ground.frame, fields, sources.force)
-        note_receivers(band, a, b, step, ground.frame, fields, receivers)
+        add_sources(band, a, b, step, ground.frame, fields, sources.force)
+        note_receivers(band, a, b, step - first_noted, ground.frame, fields, receivers)
     else:
         stress_band(band, a, b, ground, fields, scratch)
-        add_sources(band, a, b, first_step + step, ground.frame, fields, sources.moment)
+        add_sources(band, a, b, step, ground.frame, fields, sources.moment)
 
 
 @entry
@@ -54,31 +60,37 @@ def plain_pass(first_step, steps, width, bands, ground, fields, sources, receive
     a, b = np.uint64(0), np.uint64(width)
     for number in range(ground.frame.phases * steps):
         for band in range(bands):
-            stage(number, first_step, np.uint64(band), a, b, ground, fields, sources, receivers, scratch)
+            stage(number, first_step, first_step, np.uint64(band), a, b, ground, fields, sources, receivers, scratch)
 
 
 @inline
-def bound_at(j, number, bounds, slopes):
-    """Return bound j at a stage. One that comes near the first joins it: the columns of a closed edge read
-    further than a stage's reach, so they are never cut off from what they read."""
-    first, bound = bounds[0] + slopes[0] * number, bounds[j] + slopes[j] * number
-    inside = 0 < j and j < len(bounds) - 1
-    return np.uint64(first if inside and bound < first + ALIGNED else bound)
+def wait_for_neighbours(j, strips, done, wave, waves, margin, progress):
+    """Return when strip j may begin `wave` of a pass, `done` waves having been done in the passes before."""
+    if j > 0:
+        wait_for(progress, j - 1, done + wave + 1)
+    if j < strips - 1:
+        wait_for(progress, j + 1, done - waves + min(waves, wave + margin))
 
 
 @entry
-def strip_pass(bounds, slopes, first_step, steps, bands, ground, fields, sources, receivers, scratch):
-    """Advance `steps` steps inside each strip in turn.
+def strip_passes(first_strip, last_strip, bounds, move, first_step, skip, passes, steps, bands, ground, fields, sources, receivers, scratch, progress):
+    """Advance `passes` passes of `steps` steps in the strips first_strip..last_strip-1, in step with the others.
 
-    Strip j lies between bounds[j] and bounds[j + 1]; bound j moves slopes[j] columns per stage.
+    Strip j lies between bounds[j] and bounds[j + 1]; bounds inside the mesh move `move` columns left per stage.
+    The first pass begins `skip` steps after `first_step`, at which the receivers' traces begin. `progress` counts
+    the waves that each strip has done; it starts at 0.
     """
-    stages, lag = ground.frame.phases * steps, ground.rows.lag
-    for j in range(len(bounds) - 1):
-        for wave in range(bands + lag * (stages - 1)):
-            earliest = max(0, (wave - bands + lag) // lag)
-            for number in range(earliest, min(stages, wave // lag + 1)):
-                a = bound_at(j, number, bounds, slopes)
-                b = bound_at(j + 1, number, bounds, slopes)
-                band = np.uint64(wave - lag * number)
-                if a < b:
-                    stage(number, first_step, band, a, b, ground, fields, sources, receivers, scratch)
+    stages, lag, strips = ground.frame.phases * steps, ground.rows.lag, len(bounds) - 1
+    waves = bands + lag * (stages - 1)
+    for number_of_pass in range(passes):
+        step, done = first_step + skip + number_of_pass * steps, number_of_pass * waves
+        for j in range(first_strip, last_strip):
+            from_left, from_right = (move if j > 0 else 0), (move if j < strips - 1 else 0)
+            for wave in range(waves):
+                wait_for_neighbours(j, strips, done, wave, waves, lag * (stages + 1), progress)
+                earliest = max(0, (wave - bands + lag) // lag)
+                for number in range(earliest, min(stages, wave // lag + 1)):
+                    a, b = np.uint64(bounds[j] - from_left * number), np.uint64(bounds[j + 1] - from_right * number)
+                    band = np.uint64(wave - lag * number)
+                    stage(number, step, first_step, band, a, b, ground, fields, sources, receivers, scratch)
+                publish(progress, j, done + wave + 1)

@@ -214,7 +214,7 @@ def injection(mesh: Mesh, entries: Entries, series: np.ndarray, dtype) -> Inject
     return Injection(first, row, column, field, weight.astype(dtype), pulse, series.astype(dtype))
 
 
-def receivers(mesh: Mesh, points, longest_pass: int) -> Receivers:
+def receivers(mesh: Mesh, points, longest_call: int) -> Receivers:
     """Return what reads vx and vz at `points` ((x, depth), ...): slot = (receiver, component, column)."""
     entries = Entries()
     for r, (x, depth) in enumerate(points):
@@ -224,5 +224,5 @@ def receivers(mesh: Mesh, points, longest_pass: int) -> Receivers:
                 slot = (2 * r + component) * SIX + c
                 entries.add(field, cells.row, [column], cells.row_weight * weight, slot)
     first, row, column, field, weight, slot = entries.sorted(mesh)
-    trace = np.zeros((longest_pass, len(points) * 2 * SIX))
+    trace = np.zeros((longest_call, len(points) * 2 * SIX))
     return Receivers(first, row, column, field, weight, slot, trace)

@@ -12,7 +12,7 @@ import numpy as np
 from groundroll.waves import dispersion
 from groundroll.waves.assembly import EdgeDamping, Properties, assemble
 from groundroll.waves.attenuation import Loss
-from groundroll.waves.march import March, Order, fitting_order
+from groundroll.waves.march import STEPS_A_CALL, March, Order, fitting_order
 from groundroll.waves.mesh import Mesh
 from groundroll.waves.placement import SIX, Entries, add_force, add_moment, injection, on_surface, receivers
 from groundroll.waves.points import Sources
@@ -89,13 +89,13 @@ class Simulation:
         self._sources, self._series = sources, predistorted(sources, time)
         ground = assemble(mesh, properties, time.dt, damping, dtype, loss)
         order = order or fitting_order(ground, mesh.nx, np.dtype(dtype).itemsize, threads)
-        self.longest_pass = order.steps
+        self.longest_call = max(order.steps, STEPS_A_CALL // order.steps * order.steps)
         self.march = March(
             mesh,
             ground,
             new_fields(mesh, dtype),
             inject(mesh, properties, sources, self._series, time.dt, dtype),
-            receivers(mesh, points, self.longest_pass),
+            receivers(mesh, points, self.longest_call),
             order,
             threads,
         )
@@ -106,10 +106,10 @@ class Simulation:
         return self.march.step
 
     def advance(self, steps: int) -> None:
-        """Advance up to `steps` steps, pass by pass, and keep what the receivers read."""
+        """Advance up to `steps` steps, call by call, and keep what the receivers read."""
         end = min(self.step + steps, self.clock.steps)
         while self.step < end:
-            n = min(self.longest_pass, end - self.step)
+            n = min(self.longest_call, end - self.step)
             start = self.step
             self.march.advance(n)
             by_column = self.march.receivers.trace[:n].reshape(n, self.traces.shape[1], 2, SIX)
