@@ -164,3 +164,16 @@ def test_a_mesh_beyond_the_memory_is_refused_with_a_spacing_that_fits(monkeypatc
     monkeypatch.setattr(module.os, "sysconf", size.get)
     with pytest.raises(InputError, match=r"million cells need .* GB of memory; this machine has 0\.0 GB; write mesh\.spacing = "):
         plan(small(with_spacing(0.2)))
+
+
+@pytest.mark.parametrize(("quality", "received"), [("qp = 80.0\nqs = 20.0", "qp = 80"), ("qs = 20.0", "no qp")])
+def test_a_bulk_modulus_that_gives_energy_is_refused(quality, received):
+    """vp^2/qp >= 4/3 vs^2/qs: with 350 and 180 m/s, qs = 20, qp may be 0.75 (350/180)^2 20 = 56.71 at most."""
+    layer = "vp = 350.0\nvs = 180.0\ndensity = 1800.0\n"
+    with pytest.raises(InputError) as refusal:
+        plan(small((layer, layer + quality + "\n")))
+    assert str(refusal.value) == (
+        "ground: with qs = 20, vp = 350 and vs = 180 m/s the bulk modulus would give energy "
+        f"(received {received}); allowed: qp up to 0.75 (vp/vs)^2 qs = 56.71; write qp = 56 or less"
+    )
+    plan(small((layer, layer + "qp = 56.0\nqs = 20.0\n")))

@@ -5,6 +5,8 @@ nodes: density arithmetically at the velocity points, shear modulus harmonically
 orthorhombic effective medium at the nodes. Absorbing layers continue the section's outermost cells.
 """
 
+from typing import NamedTuple
+
 import numpy as np
 
 from groundroll.ground.averaging import Shear, Stiffness, effective
@@ -63,20 +65,34 @@ class Sampler:
         return type(found)(*(extended(v, mesh) for v in found))
 
 
-def sample(model: GroundModel, mesh: Mesh, losses: LossModel | None) -> tuple[Properties, Loss | None]:
-    """Return the effective properties on `mesh` and its losses, (nz, nx), or (nz, 1) where all columns are alike.
+class OnMesh(NamedTuple):
+    """Properties and losses on the mesh, (nz, nx), or (nz, 1) where all columns are alike; with losses the moduli are
+    the unrelaxed ones. `shown`: vp along z, vs, density, qp, qs as they were meant, for pictures."""
 
-    With losses the moduli are the unrelaxed ones.
-    """
+    properties: Properties
+    loss: Loss | None
+    shown: dict[str, np.ndarray]
+
+
+def sample(model: GroundModel, mesh: Mesh, losses: LossModel | None) -> OnMesh:
+    """Return the effective ground on `mesh`."""
     sampler = Sampler(model, mesh)
     density_x, density_z = sampler.mean("density", True, False), sampler.mean("density", False, True)
     stiffness, shear = sampler.mean("stiffness", False, False), sampler.mean("shear", True, True)
+    shown = at_reference(density_x, stiffness, shear)
     loss = None
     if losses is not None:
-        loss = loss_on_mesh(mesh, losses, stiffness, shear)
+        loss = loss_on_mesh(losses, stiffness, shear)
         stiffness, shear = unrelaxed(losses, stiffness, shear)
     properties = Properties(density_x, density_z, stiffness.c11, stiffness.c13, stiffness.c33, shear.shear)
-    return properties, loss
+    return OnMesh(properties, loss, shown)
+
+
+def at_reference(density, stiffness: Stiffness, shear: Shear) -> dict[str, np.ndarray]:
+    """Return speeds (NaN in a void), density and quality factors (inf: elastic)."""
+    with np.errstate(divide="ignore", invalid="ignore"):
+        vp, vs = np.sqrt(stiffness.c33 / density), np.sqrt(shear.shear / density)
+        return {"vp": vp, "vs": vs, "density": density, "qp": 1.0 / stiffness.inverse_qp, "qs": 1.0 / stiffness.inverse_qs}
 
 
 def unrelaxed(losses: LossModel, stiffness: Stiffness, shear: Shear) -> tuple[Stiffness, Shear]:
@@ -87,21 +103,12 @@ def unrelaxed(losses: LossModel, stiffness: Stiffness, shear: Shear) -> tuple[St
     return scaled, shear._replace(shear=shear.shear * losses.unrelaxed(shear.inverse_qs))
 
 
-def loss_on_mesh(mesh: Mesh, losses: LossModel, stiffness: Stiffness, shear: Shear) -> Loss:
-    """Return the coefficients of both shapes.
-
-    On the row of a free surface the stiffness is that of a plate, E = 4 mu (1 - mu/M), so its loss is
-    [(1 - 2 mu/M)/Qs + (mu/M)/Qp]/(1 - mu/M), taken alike for P and S there.
-    """
-    inverse_p, inverse_s = np.array(stiffness.inverse_qp), np.array(stiffness.inverse_qs)
-    if mesh.edges[2] == "free":
-        mu, m = 0.5 * (stiffness.c11[0] - stiffness.c13[0]), stiffness.c11[0]
-        share = np.divide(mu, m, out=np.zeros(m.shape), where=m > 0.0)  # a void has neither
-        inverse_p[0] = inverse_s[0] = ((1.0 - 2.0 * share) * inverse_s[0] + share * inverse_p[0]) / (1.0 - share)
+def loss_on_mesh(losses: LossModel, stiffness: Stiffness, shear: Shear) -> Loss:
+    """Return the coefficients of both shapes."""
     return Loss(
         omega=losses.omega,
         shapes=losses.shapes,
-        p_node=losses.coefficients(inverse_p),
-        s_node=losses.coefficients(inverse_s),
+        p_node=losses.coefficients(stiffness.inverse_qp),
+        s_node=losses.coefficients(stiffness.inverse_qs),
         s_corner=losses.coefficients(shear.inverse_qs),
     )

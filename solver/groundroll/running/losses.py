@@ -4,6 +4,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from groundroll.errors import InputError
 from groundroll.ground.model import GroundModel
 from groundroll.running.choices import reference_frequency
 from groundroll.scenario import Scenario
@@ -51,10 +52,30 @@ def loss_model(scenario: Scenario, model: GroundModel) -> LossModel | None:
     """Return the attenuation of a scenario, or None if no ground in it damps."""
     if not np.isfinite(lowest_quality(scenario, model)):
         return None
+    check_bulk_loss(scenario, model)
     high = scenario.section.highest_frequency
     low = high / 10.0**DECADES
     omega = relaxation.band_frequencies(low, high, MECHANISMS)
     return LossModel(low, high, reference_frequency(scenario), omega)
+
+
+def check_bulk_loss(scenario: Scenario, model: GroundModel) -> None:
+    """Refuse ground whose bulk modulus would give energy: vp^2/qp must be at least 4/3 vs^2/qs.
+
+    With K = rho (vp^2 - 4/3 vs^2) the losses of P, S and bulk are joined by  vp^2/qp = (K/rho)/qk + 4/3 vs^2/qs
+    (Aki & Richards, Quantitative Seismology, ch. 5; from memory), and qk must not be negative.
+    """
+    for pieces in looks(scenario, model):
+        least = 4.0 / 3.0 * pieces.vs**2 / pieces.qs
+        wrong = np.flatnonzero(pieces.vp**2 / pieces.qp < least * (1.0 - 1e-9))
+        if len(wrong):
+            vp, vs, qp, qs = (float(getattr(pieces, name)[wrong[0]]) for name in ("vp", "vs", "qp", "qs"))
+            most = 0.75 * (vp / vs) ** 2 * qs
+            given = "no qp" if np.isinf(qp) else f"qp = {qp:g}"
+            raise InputError(
+                f"ground: with qs = {qs:g}, vp = {vp:g} and vs = {vs:g} m/s the bulk modulus would give energy "
+                f"(received {given}); allowed: qp up to 0.75 (vp/vs)^2 qs = {most:.4g}; write qp = {np.floor(most):g} or less"
+            )
 
 
 def looks(scenario: Scenario, model: GroundModel):

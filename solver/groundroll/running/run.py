@@ -12,7 +12,7 @@ from groundroll.errors import Interrupted, StorageError
 from groundroll.records import Records, RecordsWriter, SnapshotFrame
 from groundroll.running import choices, machine, scene
 from groundroll.running.error_law import PEAK_TO_HIGHEST
-from groundroll.running.ground_on_mesh import sample
+from groundroll.running.ground_on_mesh import OnMesh, sample
 from groundroll.running.interruption import Interruption
 from groundroll.running.observers import Seismograms, Snapshots, Totals
 from groundroll.running.plan import Plan, plan, room_for
@@ -105,19 +105,19 @@ def point_sources(made: Plan) -> list[PointSource]:
     return found
 
 
-def set_up(made: Plan, lines, threads: int, order: Order | None = None) -> Simulation:
-    """Sample the ground and place everything on the mesh."""
+def set_up(made: Plan, ground: OnMesh, lines, threads: int, order: Order | None = None) -> Simulation:
+    """Place everything on the mesh."""
     points = [(x, depth) for line in lines for x, depth in zip(line.x, line.depth, strict=True)]
     damping = EdgeDamping(made.fastest, np.pi * made.scenario.section.highest_frequency / PEAK_TO_HIGHEST)
-    properties, loss = sample(made.model, made.mesh, made.losses)
     sources = point_sources(made)
-    return Simulation(made.mesh, properties, damping, made.clock, sources, points, made.dtype, order, threads, loss)
+    return Simulation(made.mesh, ground.properties, damping, made.clock, sources, points, made.dtype, order, threads, ground.loss)
 
 
 def compute(made: Plan, lines, frame, writer: RecordsWriter, threads: int, quiet: bool, order: Order | None) -> dict:
     """Step through the run, calling each observer at its steps; return the seconds spent."""
-    simulation = set_up(made, lines, threads, order)
-    writer.put_ground(*scene.ground_arrays(made, simulation.properties))
+    ground = sample(made.model, made.mesh, made.losses)
+    simulation = set_up(made, ground, lines, threads, order)
+    writer.put_ground(*scene.ground_arrays(made, ground.shown))
     announce_compiling(quiet)
     totals = Totals(writer, simulation)
     compile_seconds = simulation.warm_up() + totals.warm_up()

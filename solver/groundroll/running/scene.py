@@ -82,22 +82,27 @@ def thinned(mesh) -> tuple[np.ndarray, np.ndarray]:
     return rows[:: max(1, len(rows) // GROUND_NODES)], columns[:: max(1, len(columns) // GROUND_NODES)]
 
 
-def ground_arrays(made: Plan, properties) -> tuple:
-    """Return the arguments of `RecordsWriter.put_ground`: speeds and density as the solver sees them."""
+def ground_arrays(made: Plan, shown: dict[str, np.ndarray]) -> tuple:
+    """Return the arguments of `RecordsWriter.put_ground`: the ground as the solver sees it (`OnMesh.shown`) and its mesh.
+
+    Quality factors are left out where nothing damps. Points per wavelength count the wider of both spacings.
+    """
     mesh = made.mesh
     rows, columns = thinned(mesh)
-    shape = (mesh.nz, mesh.nx)
-    density, c33, shear = (np.broadcast_to(v, shape)[np.ix_(rows, columns)] for v in (properties.density_x, properties.c33, properties.shear))
-    with np.errstate(divide="ignore", invalid="ignore"):
-        vs = np.sqrt(shear / density)
-        vp = np.sqrt(c33 / density)
-    frequency = made.scenario.section.highest_frequency
+    whole = np.s_[np.ix_(rows, columns)]
+    shown = {name: np.broadcast_to(values, (mesh.nz, mesh.nx))[whole] for name, values in shown.items()}
+    spacing = np.broadcast_to(mesh.spacing * np.asarray(mesh.stretch(False, False)), (mesh.nz, mesh.nx))[whole]
+    points = shown["vs"] / made.scenario.section.highest_frequency / np.maximum(spacing, mesh.spacing)
     arrays = {
-        "vp": (vp, "m s-1", "P-wave speed on the mesh, along z"),
-        "vs": (vs, "m s-1", "S-wave speed on the mesh"),
-        "density": (density, "kg m-3", "density on the mesh"),
-        "points_per_wavelength": (vs / frequency / mesh.spacing, "1", "mesh points per S wavelength at the highest frequency"),
+        "vp": (shown["vp"], "m s-1", "P-wave speed on the mesh, along z"),
+        "vs": (shown["vs"], "m s-1", "S-wave speed on the mesh"),
+        "density": (shown["density"], "kg m-3", "density on the mesh"),
     }
+    if made.losses is not None:
+        arrays["qp"] = (shown["qp"], "1", "quality factor of P waves")
+        arrays["qs"] = (shown["qs"], "1", "quality factor of S waves")
+    arrays["spacing_z"] = (spacing, "m", "mesh spacing along z")
+    arrays["points_per_wavelength"] = (points, "1", "mesh points per S wavelength at the highest frequency")
     elevation = mesh.node_elevation()
     if elevation is not None:
         elevation = elevation[np.ix_(rows, columns)]
