@@ -47,6 +47,7 @@ def parser() -> argparse.ArgumentParser:
     draw = commands.add_parser("draw", parents=[quiet], help="draw the figures of a run")
     draw.add_argument("folder", type=Path, metavar="FOLDER")
     draw.add_argument("--only", metavar="KIND", help="record_section, peaks, wavefield or ground")
+    draw.add_argument("--stretch", action="store_true", help="let the ground fill its panels instead of one scale for x and depth")
     draw.set_defaults(do=do_draw)
     return top
 
@@ -101,7 +102,7 @@ def do_run(options) -> int:
 def do_draw(options) -> None:
     from groundroll.figures import draw
 
-    for path in draw(options.folder, options.only):
+    for path in draw(options.folder, options.only, stretch=options.stretch):
         say(options, str(path))
 
 

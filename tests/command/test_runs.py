@@ -37,6 +37,10 @@ def test_a_run_and_its_figures(shell):
         assert (shell.folder / "outputs/a/figures" / name).read_bytes()[:4] == b"\x89PNG"
     one = shell("draw", "outputs/a", "--only", "ground", "-q")
     assert (one.returncode, one.stdout, one.stderr) == (0, "", "")
+    ground = shell.folder / "outputs/a/figures/ground.png"
+    in_scale = ground.read_bytes()
+    assert shell("draw", "outputs/a", "--only", "ground", "--stretch", "-q").returncode == 0
+    assert ground.read_bytes() != in_scale
 
 
 def test_quiet_prints_nothing(shell):

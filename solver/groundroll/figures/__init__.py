@@ -18,8 +18,10 @@ from groundroll.records.storage import plain_errors
 KINDS = ("record_section", "peaks", "wavefield", "ground")
 
 
-def draw(folder: str | Path, only: str | None = None, dpi: int = 150) -> list[Path]:
+def draw(folder: str | Path, only: str | None = None, dpi: int = 150, stretch: bool = False) -> list[Path]:
     """Draw all figures of a run, or only those of one kind (of KINDS), as PNG files into folder/figures/.
+
+    The ground has one scale for x and depth, or is stretched to fill its panels.
 
     Returns the files in the order drawn. Raises StorageError if the records cannot be read or the pictures
     not written, InputError for an unknown kind.
@@ -31,7 +33,7 @@ def draw(folder: str | Path, only: str | None = None, dpi: int = 150) -> list[Pa
     drawn = []
     with plain_errors("writing the figures", place):
         place.mkdir(exist_ok=True)
-    for name, make in _figures(records, only):
+    for name, make in _figures(records, only, stretch):
         path = place / f"{name}.png"
         figure = make()
         with plain_errors("writing the figures", place):
@@ -40,7 +42,7 @@ def draw(folder: str | Path, only: str | None = None, dpi: int = 150) -> list[Pa
     return drawn
 
 
-def _figures(records: Records, only: str | None) -> Iterator[tuple[str, Callable[[], Figure]]]:
+def _figures(records: Records, only: str | None, stretch: bool) -> Iterator[tuple[str, Callable[[], Figure]]]:
     """File stem and drawing function of each figure that the records allow."""
     wanted = KINDS if only is None else (only,)
     for name, line in zip(_stems(records.seismograms), records.seismograms.values(), strict=True):
@@ -55,7 +57,7 @@ def _figures(records: Records, only: str | None) -> Iterator[tuple[str, Callable
         for field in records.snapshots.fields:
             yield f"wavefield_{field}", partial(draw_wavefield, records, field)
     if "ground" in wanted and records.ground is not None and records.ground.arrays:
-        yield "ground", partial(draw_ground, records)
+        yield "ground", partial(draw_ground, records, not stretch)
 
 
 def _stems(names) -> list[str]:
