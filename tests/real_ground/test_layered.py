@@ -19,15 +19,17 @@ SATURATED = [(2.0, 400.0, 150.0, 1800.0, 25.0, 12.0), (8.0, 1500.0, 150.0, 1700.
 INVERSION = [(4.0, 600.0, 300.0, 1900.0, 40.0, 20.0), (5.0, 400.0, 180.0, 1700.0, 30.0, 10.0), (None, 1000.0, 500.0, 2100.0, 80.0, 40.0)]
 DISTANCES = np.array([10.0, 30.0])
 DURATION = 0.6
+# Far enough from the edges that what they send back, 0.5 % of the peak or so, comes late.
+SOURCE = 50.0
 
 
 def scenario(layers, points, lossy, depth=0.0, graded=False, section_depth=None):
     slowest = min(vs for _, _, vs, *_ in layers)
     highest = FIVE_PER_CENT * FREQUENCY
-    down = section_depth or sum(t for t, *_ in layers[:-1]) + slowest / FREQUENCY + 3.0
+    down = section_depth or sum(t for t, *_ in layers[:-1]) + slowest / FREQUENCY + 23.0
     text = f"""
 [section]
-length = {24.0 + DISTANCES[-1] + 3.0 * slowest / FREQUENCY}
+length = {SOURCE + 44.0 + DISTANCES[-1]}
 depth = {down}
 duration = {DURATION}
 highest_frequency = {highest}
@@ -44,13 +46,13 @@ reference_frequency = {FREQUENCY}
 [[source]]
 name = "hammer"
 kind = "force"
-x = 20.0
+x = {SOURCE}
 depth = {depth}
 force = [0.0, 1.0e5]
 pulse = {{ shape = "ricker", frequency = {FREQUENCY} }}
 [[receivers]]
 name = "line"
-at = {[[20.0 + float(d), 0.0] for d in DISTANCES]}
+at = {[[SOURCE + float(d), 0.0] for d in DISTANCES]}
 [output]
 sample_interval = 0.002
 """

@@ -5,8 +5,9 @@ the integrals over the pieces of ground are exact. Where the edges are not level
 the straight line that the neighbouring columns' edges suggest. Only ground counts: the part of a cell above
 the surface is left out, and a cell that lies wholly above it takes the ground at the surface.
 
-Any void in a cell makes its stiffness or shear modulus 0; the density of a wholly void cell is inf, so that
-its inverse is 0.
+The part of a cell that is void is left out as well, if it is less than half; else the cell has no stiffness. The
+density of a cell is never less than LEAST_FILL of its ground's: lighter cells are unstable and ring. A wholly void
+cell has the density inf, so that its inverse is 0.
 """
 
 from typing import NamedTuple
@@ -19,6 +20,10 @@ from .sweep import column_means
 
 CHUNK_PIECES = 400_000
 """Pieces and sub-cells worked on together: few enough to stay near the processor."""
+
+LEAST_FILL = 0.5
+"""Part of a cell that must be ground for the cell to have stiffness; least part of the ground's mass that it keeps. At
+0.25 runs beside a round cavity blew up at 24 points per wavelength."""
 
 
 class Shear(NamedTuple):
@@ -108,9 +113,22 @@ class _SubColumns:
 
 def _density(places: _SubColumns, begin: int, end: int) -> tuple[np.ndarray]:
     columns, edges = places.take(begin, end)
-    (density,), _, _ = places.means(columns, edges, columns.density)
-    mean = _across(density)
+    (density, ground), _, _ = places.means(columns, edges, columns.density, _is_ground(columns))
+    mean, filled = _across(density), _across(ground)
+    mean = np.maximum(mean, LEAST_FILL * _ratio(mean, filled))
     return (np.where(mean > 0.0, mean, np.inf).T,)
+
+
+def _is_ground(columns: Columns) -> np.ndarray:
+    """1 where there is ground, 0 in a void."""
+    return (columns.density > 0.0).astype(float)
+
+
+def _mean(values: np.ndarray, filled: np.ndarray) -> np.ndarray:
+    """Mean over the sub-columns (axis 1), each counting by how far it is ground; 0 where none is."""
+    if (filled == 1.0).all():
+        return values.mean(axis=1)
+    return _ratio((values * filled).sum(axis=1), filled.sum(axis=1))
 
 
 def _across(values: np.ndarray) -> np.ndarray:
@@ -120,8 +138,8 @@ def _across(values: np.ndarray) -> np.ndarray:
 
 
 def _inverse(values: np.ndarray) -> np.ndarray:
-    """1/values, inf where 0."""
-    return np.divide(1.0, values, out=np.full(np.shape(values), np.inf), where=values > 0.0)
+    """1/values, 0 where 0: what is void is left out of means."""
+    return _ratio(np.ones(np.shape(values)), values)
 
 
 def _ratio(above: np.ndarray, below: np.ndarray) -> np.ndarray:
@@ -137,9 +155,10 @@ def _loss(modulus: np.ndarray, quality: np.ndarray) -> np.ndarray:
 def _shear(places: _SubColumns, begin: int, end: int) -> tuple[np.ndarray, np.ndarray]:
     columns, edges = places.take(begin, end)
     modulus = columns.density * columns.vs**2
-    means, first, last = places.means(columns, edges, _inverse(modulus), _loss(modulus, columns.qs))
-    compliance, loss = (_across(mean) for mean in means)
-    shear = np.where(np.isfinite(compliance), 1.0 / compliance, 0.0)
+    fields = (_inverse(modulus), _loss(modulus, columns.qs), _is_ground(columns))
+    means, first, last = places.means(columns, edges, *fields)
+    compliance, loss, filled = (_across(mean) for mean in means)
+    shear = np.where(filled > LEAST_FILL, _ratio(filled, compliance), 0.0)
     (exact, quality), single = _of_one_piece(first, last, modulus, columns.qs)
     inverse_qs = np.where(single, 1.0 / quality, _ratio(loss, compliance))
     return np.where(single, exact, shear).T, inverse_qs.T
@@ -166,11 +185,11 @@ def _stiffness(places: _SubColumns, begin: int, end: int) -> tuple[np.ndarray, .
     p = columns.density * columns.vp**2
     lam = p - 2.0 * mu
     share = _ratio(lam, p)
-    fields = (_inverse(p), share, p - lam * share, _inverse(mu), _loss(p, columns.qp), _loss(mu, columns.qs))
-    means, first, last = places.means(columns, edges, *fields)
-    c11, c13, c33 = _across_sub_columns(*_down_sub_columns(*means[:3]))
-    p_loss = _ratio(means[4].mean(axis=1), means[0].mean(axis=1))
-    s_loss = _ratio(means[5].mean(axis=1), means[3].mean(axis=1))
+    fields = (_inverse(p), share, p - lam * share, _inverse(mu), _loss(p, columns.qp), _loss(mu, columns.qs), _is_ground(columns))
+    (*means, filled), first, last = places.means(columns, edges, *fields)
+    compliance, share, rest = (_ratio(mean, filled) for mean in means[:3])
+    c11, c13, c33 = _across_sub_columns(*_down_sub_columns(compliance, share, rest), filled)
+    p_loss, s_loss = (_ratio(_across(means[loss]), _across(means[of])) for loss, of in ((4, 0), (5, 3)))
     (p, lam, qp, qs), single = _of_one_piece(first, last, p, lam, columns.qp, columns.qs)
     exact = (p, lam, p, 1.0 / qp, 1.0 / qs)
     found = (c11, c13, c33, p_loss, s_loss)
@@ -178,17 +197,17 @@ def _stiffness(places: _SubColumns, begin: int, end: int) -> tuple[np.ndarray, .
 
 
 def _down_sub_columns(compliance, share, rest):
-    """c11, c13, c33 of each sub-column from <1/M>, <lambda/M>, <M - lambda^2/M>; all 0 where there is a void."""
-    c33 = np.where(np.isfinite(compliance), 1.0 / compliance, 0.0)
+    """c11, c13, c33 of each sub-column from <1/M>, <lambda/M>, <M - lambda^2/M> of its ground; all 0 where it has none."""
+    c33 = _inverse(compliance)
     c11 = np.where(c33 > 0.0, rest + share**2 * c33, 0.0)
     return c11, share * c33, c33
 
 
-def _across_sub_columns(c11, c13, c33):
-    """c11, c13, c33 of cells (cells, nz) from those of their sub-columns in series; all 0 where one has a void."""
-    compliance = _inverse(c11).mean(axis=1)
-    stiff = np.where(np.isfinite(compliance), 1.0 / compliance, 0.0)
+def _across_sub_columns(c11, c13, c33, filled):
+    """c11, c13, c33 of cells (cells, nz) from those of their sub-columns in series, which are `filled` with ground so
+    far; all 0 where half of the cell or more is void."""
+    stiff = np.where(filled.mean(axis=1) > LEAST_FILL, _inverse(_mean(_inverse(c11), filled)), 0.0)
     share = _ratio(c13, c11)
-    mean_share = share.mean(axis=1)
-    rest = (c33 - c13 * share).mean(axis=1)
+    mean_share = _mean(share, filled)
+    rest = _mean(c33 - c13 * share, filled)
     return stiff, mean_share * stiff, np.where(stiff > 0.0, rest + mean_share**2 * stiff, 0.0)

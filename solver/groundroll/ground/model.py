@@ -62,6 +62,11 @@ class GroundModel:
     spacing: float
     laterally_uniform: bool
 
+    @property
+    def of_one_material(self) -> bool:
+        """Whether the ground is level and the same everywhere."""
+        return self.laterally_uniform and len(self.pieces(0.0).top) == 1
+
     def surface_elevation(self, x: np.ndarray) -> np.ndarray:
         """Elevation of the ground surface (m, positive up) at x (m)."""
         return self.surface.elevation(np.asarray(x, dtype=float))

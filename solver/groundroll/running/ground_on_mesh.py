@@ -79,6 +79,7 @@ def sample(model: GroundModel, mesh: Mesh, losses: LossModel | None) -> OnMesh:
     sampler = Sampler(model, mesh)
     density_x, density_z = sampler.mean("density", True, False), sampler.mean("density", False, True)
     stiffness, shear = sampler.mean("stiffness", False, False), sampler.mean("shear", True, True)
+    density_x, density_z = beside_voids(density_x, density_z, stiffness, shear)
     shown = at_reference(density_x, stiffness, shear)
     loss = None
     if losses is not None:
@@ -86,6 +87,31 @@ def sample(model: GroundModel, mesh: Mesh, losses: LossModel | None) -> OnMesh:
         stiffness, shear = unrelaxed(losses, stiffness, shear)
     properties = Properties(density_x, density_z, stiffness.c11, stiffness.c13, stiffness.c33, shear.shear)
     return OnMesh(properties, loss, shown)
+
+
+def beside_voids(density_x, density_z, stiffness: Stiffness, shear: Shear) -> tuple[np.ndarray, np.ndarray]:
+    """Return the densities with inf (no motion) where no stress acts, and with a mass wherever one does.
+
+    A velocity cell that is wholly void can have a stress beside it that is not; it takes the least density about it.
+    """
+    if not (stiffness.c33 == 0.0).any() and not (shear.shear == 0.0).any():
+        return density_x, density_z
+    normal, across = stiffness.c33 > 0.0, shear.shear > 0.0
+    # vx lies between nodes i, i + 1 and between half rows k - 1/2, k + 1/2; vz between rows k, k + 1 and half columns.
+    acts_x = normal | shifted(normal, -1, 1) | across | shifted(across, 1, 0)
+    acts_z = normal | shifted(normal, -1, 0) | across | shifted(across, 1, 1)
+    return with_mass(density_x, acts_x), with_mass(density_z, acts_z)
+
+
+def shifted(values: np.ndarray, by: int, axis: int) -> np.ndarray:
+    """Return values[k - by] along `axis`, the ends repeated."""
+    index = np.clip(np.arange(values.shape[axis]) - by, 0, values.shape[axis] - 1)
+    return np.take(values, index, axis=axis)
+
+
+def with_mass(density: np.ndarray, acts: np.ndarray) -> np.ndarray:
+    about = np.minimum.reduce([shifted(density, by, axis) for by in (-1, 1) for axis in (0, 1)])
+    return np.where(acts, np.where(np.isfinite(density), density, about), np.inf)
 
 
 def at_reference(density, stiffness: Stiffness, shear: Shear) -> dict[str, np.ndarray]:

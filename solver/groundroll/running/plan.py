@@ -107,14 +107,19 @@ def make_mesh(scenario: Scenario, model: GroundModel, choice: Choice) -> Mesh:
     if scenario.mesh.graded:
         grading = grade(model, choice.spacing, depth, choices.surface_wavelength(scenario, model))
         rows = math.ceil(grading.zeta_at(depth) / choice.spacing - 1e-9)
-        mesh = even_mesh(choice.spacing, section.length, rows * choice.spacing, conditions, absorbing.CELLS)
+        mesh = even_mesh(choice.spacing, section.length, rows * choice.spacing, conditions, edge_recipe(model).cells)
         mesh = with_depths(mesh, grading.depth_of, grading.stretch_of)
     else:
-        mesh = even_mesh(choice.spacing, section.length, depth, conditions, absorbing.CELLS)
+        mesh = even_mesh(choice.spacing, section.length, depth, conditions, edge_recipe(model).cells)
     if scenario.ground.terrain is None:
         return mesh
     refuse_steep_relief(scenario, model)
     return with_terrain(mesh, model.surface_elevation, model.surface_slope)
+
+
+def edge_recipe(model: GroundModel) -> absorbing.Recipe:
+    """Return how the absorbing layers damp: ground of more than one material guides waves."""
+    return absorbing.UNIFORM if model.of_one_material else absorbing.GUIDING
 
 
 def refuse_steep_relief(scenario: Scenario, model: GroundModel) -> None:
@@ -246,7 +251,7 @@ def grading_rows(made: Plan) -> list[tuple[str, str]]:
     if not made.scenario.mesh.graded:
         return []
     mesh = made.mesh
-    even = even_mesh(mesh.spacing, made.scenario.section.length, made.scenario.section.depth, mesh.edges, absorbing.CELLS).cells
+    even = even_mesh(mesh.spacing, made.scenario.section.length, made.scenario.section.depth, mesh.edges, edge_recipe(made.model).cells).cells
     deepest = mesh.spacing * mesh.stretch_node[mesh.section_rows][-1]
     return [("graded", f"rows grow from {mesh.spacing:.3g} to {deepest:.3g} m; {even / mesh.cells:.1f} times fewer cells than an even mesh")]
 

@@ -15,10 +15,10 @@ from groundroll.running.error_law import PEAK_TO_HIGHEST
 from groundroll.running.ground_on_mesh import OnMesh, sample
 from groundroll.running.interruption import Interruption
 from groundroll.running.observers import Seismograms, Snapshots, Totals
-from groundroll.running.plan import Plan, plan, room_for
+from groundroll.running.plan import Plan, edge_recipe, plan, room_for
 from groundroll.running.progress import progress_for
 from groundroll.scenario import Scenario
-from groundroll.waves.assembly import EdgeDamping
+from groundroll.waves.absorbing import EdgeDamping
 from groundroll.waves.march import Order
 from groundroll.waves.simulation import PointSource, Simulation
 
@@ -108,7 +108,8 @@ def point_sources(made: Plan) -> list[PointSource]:
 def set_up(made: Plan, ground: OnMesh, lines, threads: int, order: Order | None = None) -> Simulation:
     """Place everything on the mesh."""
     points = [(x, depth) for line in lines for x, depth in zip(line.x, line.depth, strict=True)]
-    damping = EdgeDamping(made.fastest, np.pi * made.scenario.section.highest_frequency / PEAK_TO_HIGHEST)
+    shift = np.pi * made.scenario.section.highest_frequency / PEAK_TO_HIGHEST
+    damping = EdgeDamping(made.fastest, shift, edge_recipe(made.model))
     sources = point_sources(made)
     return Simulation(made.mesh, ground.properties, damping, made.clock, sources, points, made.dtype, order, threads, ground.loss)
 

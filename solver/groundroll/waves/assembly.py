@@ -5,6 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from groundroll.waves import absorbing
+from groundroll.waves.absorbing import EdgeDamping
 from groundroll.waves.cell import BAND, INTERIOR, MARGIN_COLUMNS, MARGIN_ROWS
 from groundroll.waves.mesh import Mesh
 from groundroll.waves.operators import CLOSED_NODES
@@ -28,14 +29,6 @@ class Properties:
     c13: np.ndarray
     c33: np.ndarray
     shear: np.ndarray
-
-
-@dataclass(frozen=True)
-class EdgeDamping:
-    """What the absorbing layers are tuned to: `speed` (m/s) and frequency `shift` (1/s)."""
-
-    speed: float
-    shift: float
 
 
 def stiffness_at_edges(mesh: Mesh, p: Properties) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
@@ -166,8 +159,8 @@ def columns(mesh: Mesh, sides, elastic: bool, dtype) -> Columns:
 
 def assemble(mesh: Mesh, p: Properties, dt: float, damping: EdgeDamping, dtype, loss: Loss | None = None) -> Ground:
     """Return all that the kernels need of mesh, ground, edges and attenuation for steps of `dt` s."""
-    sides = absorbing.sides(mesh, damping.speed, damping.shift, dt, dtype)
-    layers = absorbing.layers(mesh, damping.speed, damping.shift, dt, dtype)
+    sides = absorbing.sides(mesh, damping, dt, dtype)
+    layers = absorbing.layers(mesh, damping, dt, dtype)
     return Ground(
         frame=frame(mesh),
         material=material(mesh, p, dt, dtype),
