@@ -164,6 +164,7 @@ def test_trench_is_where_it_was_dug():
     assert (ground.vs[outside] > 0.0).all()
 
 
+@pytest.mark.slow
 def test_trench_in_even_ground():
     """An open trench 0.6 Rayleigh wavelengths deep lets through a quarter (Woods 1968, rule of thumb, from memory).
 
@@ -197,6 +198,7 @@ def test_trench_by_the_pile():
 LEVEE_MODE = {15.0: 185.3, 20.0: 158.5, 30.0: 138.0, 40.0: 133.5}
 
 
+@pytest.mark.slow
 def test_dispersion_of_the_levee():
     """2 %, of which up to 1.3 % are the losses (speeds are given at 25 Hz); 48 m are 4 wavelengths at 15 Hz."""
     spread = line_of("levee_hammer_line", "spread")
@@ -288,6 +290,7 @@ def over_rock(*ground, deep=(), place=120):
     return np.divide(*(np.abs(spectrum(line, HERTZ, "velocity_x")[place]) for line in lines))
 
 
+@pytest.mark.slow
 def test_column_of_the_valley():
     """A level floor 120 m deep amplifies 4.5 times at 0.705 Hz over an outcrop of the rock.
 
@@ -347,6 +350,7 @@ def over_outcrop(lines, frequencies):
     return np.sqrt(basin / rock)
 
 
+@pytest.mark.slow
 def test_peaks_of_the_basin(town):
     """Frequency 5 %, height 10 %: Q lowers the first by 1 %, the mesh, five cells to the clay, by 2 % (level layers over
     a deep source: 1.90 Hz at 5.1 m, 1.98 at 2.3 m, column 2.00), and the source is only 210 m below, no plane wave.
@@ -361,6 +365,7 @@ def test_peaks_of_the_basin(town):
     np.testing.assert_allclose(found[:, 1], [height for _, height in expected], rtol=0.1, atol=0)
 
 
+@pytest.mark.slow
 def test_waves_born_at_the_edge_of_the_basin(town):
     """Late vertical motion from the western edge on runs as the fundamental mode: 416 m/s at 3 Hz, 298 at 4 Hz.
 
@@ -378,6 +383,7 @@ def duration_of(line):
     return line.time[(energy > 0.95).argmax(axis=1)] - line.time[(energy > 0.05).argmax(axis=1)]
 
 
+@pytest.mark.slow
 def test_the_basin_rings_on(town):
     """At each place in the basin motion lasts half as long again as if it were rock, or more, and longer than on rock beside it."""
     lasting, on_rock = (duration_of(line) for line in town)
