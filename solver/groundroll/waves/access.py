@@ -31,7 +31,7 @@ def _tag(builder, instruction, family: int) -> None:
     instruction.set_metadata("noalias", module.add_metadata(others))
 
 
-def _entry(context, builder, array_type, array, index):
+def entry_of(context, builder, array_type, array, index):
     """Return the address of array[index]."""
     return builder.gep(context.make_array(array_type)(context, builder, array).data, [index], inbounds=True)
 
@@ -57,7 +57,7 @@ else:
             return None
 
         def generate(context, builder, signature, arguments):
-            value = builder.load(_entry(context, builder, signature.args[0], *arguments[:2]))
+            value = builder.load(entry_of(context, builder, signature.args[0], *arguments[:2]))
             _tag(builder, value, family.literal_value)
             return value
 
@@ -70,7 +70,7 @@ else:
             return None
 
         def generate(context, builder, signature, arguments):
-            store = builder.store(arguments[2], _entry(context, builder, signature.args[0], *arguments[:2]))
+            store = builder.store(arguments[2], entry_of(context, builder, signature.args[0], *arguments[:2]))
             _tag(builder, store, family.literal_value)
             return context.get_dummy_value()
 

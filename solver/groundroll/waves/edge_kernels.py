@@ -22,12 +22,18 @@ def lies_half(operator):
 
 
 @inline
+def kept_after(psi, w, b, a, derivative):
+    """Return psi <- b psi + a d of entry w."""
+    kept = b * at(psi, w, EDGES) + a * derivative
+    put(psi, w, kept, EDGES)
+    return kept
+
+
+@inline
 def convolve(d, i, psi, w, rb, ra):
     """psi <- rb psi + ra d,  d += psi."""
     derivative = at(d, i, WORK)
-    kept = rb * at(psi, w, EDGES) + ra * derivative
-    put(psi, w, kept, EDGES)
-    put(d, i, derivative + kept, WORK)
+    put(d, i, derivative + kept_after(psi, w, rb, ra, derivative), WORK)
 
 
 @kernel
@@ -69,14 +75,6 @@ def fade(f, k, a, b, half_column, half_row, ground):
         across = layers.fade[half_row, U(r)]
         for i in range(base + a, base + b):
             f[i] *= across
-
-
-@inline
-def kept_after(psi, w, b, a, derivative):
-    """Return psi <- b psi + a d of side column w."""
-    kept = b * at(psi, w, EDGES) + a * derivative
-    put(psi, w, kept, EDGES)
-    return kept
 
 
 @inline

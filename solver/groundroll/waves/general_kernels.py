@@ -12,7 +12,7 @@ from groundroll.waves.cell import HALF_MOMENTUM, HALF_STRAIN, NODE_MOMENTUM, NOD
 from groundroll.waves.edge_kernels import absorb_along_x, absorb_along_z, fade
 from groundroll.waves.jit import inline, kernel
 from groundroll.waves.memory_kernels import relax, take_difference
-from groundroll.waves.stencils import ONE, sum_rows, to_half, to_node
+from groundroll.waves.stencils import ONE, add, sum_rows, to_half, to_node
 from groundroll.waves.terrain_kernels import (
     depth_force_x,
     depth_force_z,
@@ -64,8 +64,7 @@ def derivative_z(out, f, family, k, a, b, operator, ground):
 def times_sum(f, factor, p, q, base, a, b, family):
     """f += factor (p + q) on columns a..b-1 of a row; p and q are scratch."""
     for i in range(a, b):
-        change = at(factor, base + i, GROUND) * (at(p, i, WORK) + at(q, i, WORK))
-        put(f, base + i, at(f, base + i, family) + change, family)
+        add(f, base + i, at(factor, base + i, GROUND) * (at(p, i, WORK) + at(q, i, WORK)), family)
 
 
 @kernel
@@ -112,7 +111,7 @@ def strain_rates(k, a, b, ground, f, scratch):
         derivative_z(ez, f.vz, VELOCITY, k, a, b, NODE_STRAIN, ground)
         derivative_z(q, f.vx, VELOCITY, k, a, b, HALF_STRAIN, ground)
         for i in range(a, b):
-            put(g, i, at(g, i, WORK) + at(q, i, WORK), WORK)
+            add(g, i, at(q, i, WORK), WORK)
 
 
 @kernel
@@ -131,11 +130,11 @@ def general_stress(k, a, b, ground, f, scratch):
     for i in range(a, b):
         j = base + i
         x, z, across = at(ex, i, WORK), at(ez, i, WORK), at(m.c13, j, GROUND)
-        put(f.sxx, j, at(f.sxx, j, STRESS) + (at(m.c11, j, GROUND) * x + across * z), STRESS)
-        put(f.szz, j, at(f.szz, j, STRESS) + (across * x + at(m.c33, j, GROUND) * z), STRESS)
+        add(f.sxx, j, at(m.c11, j, GROUND) * x + across * z, STRESS)
+        add(f.szz, j, across * x + at(m.c33, j, GROUND) * z, STRESS)
     for i in range(a, b):
         j = base + i
-        put(f.sxz, j, at(f.sxz, j, STRESS) + at(m.mu, j, GROUND) * at(g, i, WORK), STRESS)
+        add(f.sxz, j, at(m.mu, j, GROUND) * at(g, i, WORK), STRESS)
     if ground.memory.count > 0:
         take_difference(k, a, b, ground, f, scratch)
     fade(f.sxx, k, a, b, 0, 0, ground)

@@ -12,6 +12,7 @@ import numba
 from numba import types
 from numba.core.extending import intrinsic
 
+from groundroll.waves.access import entry_of
 from groundroll.waves.jit import inline
 
 SPREAD = 16
@@ -31,13 +32,10 @@ if numba.config.DISABLE_JIT:
 else:
     let_others_run = types.ExternalFunction("SwitchToThread" if sys.platform == "win32" else "sched_yield", types.int32())
 
-    def _entry(context, builder, array_type, array, index):
-        return builder.gep(context.make_array(array_type)(context, builder, array).data, [index], inbounds=True)
-
     @intrinsic
     def _store(typing_context, counts, index, count):
         def generate(context, builder, signature, arguments):
-            entry = _entry(context, builder, signature.args[0], *arguments[:2])
+            entry = entry_of(context, builder, signature.args[0], *arguments[:2])
             builder.store_atomic(arguments[2], entry, "release", ENTRY_BYTES)
             return context.get_dummy_value()
 
@@ -46,7 +44,7 @@ else:
     @intrinsic
     def _load(typing_context, counts, index):
         def generate(context, builder, signature, arguments):
-            entry = _entry(context, builder, signature.args[0], *arguments)
+            entry = entry_of(context, builder, signature.args[0], *arguments)
             return builder.load_atomic(entry, "acquire", ENTRY_BYTES)
 
         return counts.dtype(counts, types.intp), generate

@@ -13,21 +13,15 @@ keeps the loops from vectorising.
 
 import numpy as np
 
-from groundroll.waves.access import GROUND, STRESS, VELOCITY, at, put
+from groundroll.waves.access import GROUND, STRESS, VELOCITY, at
 from groundroll.waves.edge_kernels import side_stress, side_velocity
 from groundroll.waves.general_kernels import general_stress, general_velocity
 from groundroll.waves.jit import inline, kernel
 from groundroll.waves.memory_kernels import fast_lossy_normal, fast_lossy_shear
-from groundroll.waves.stencils import ONE, TWO, to_half, to_node
+from groundroll.waves.stencils import ONE, TWO, add, to_half, to_node
 from groundroll.waves.terrain_kernels import force_helpers, strain_helpers
 
 U = np.uint64
-
-
-@inline
-def add(f, i, amount, family):
-    """f[i] += amount."""
-    put(f, i, at(f, i, family) + amount, family)
 
 
 @kernel

@@ -19,7 +19,7 @@ P relaxes (lambda + 2 mu), S relaxes mu. The matrix that acts on P and S is symm
 
 from groundroll.waves.access import FIRST, FOURTH, GROUND, SECOND, STRESS, THIRD, VELOCITY, WORK, at, put
 from groundroll.waves.jit import inline, kernel
-from groundroll.waves.stencils import ONE, to_half, to_node
+from groundroll.waves.stencils import ONE, add, to_half, to_node
 
 
 @inline
@@ -66,8 +66,8 @@ def fast_lossy_normal(a, b, pitch, c, p, f, c11, c13, c33, memory):
         l11, l13, l33 = at(c11, j, GROUND), at(c13, j, GROUND), at(c33, j, GROUND)
         dx, dz = ex - (a1 * yx + a2 * zx), ez - (a1 * yz + a2 * zz)
         less = (l11 - l13) + (l33 - l13)
-        put(sxx, j, at(sxx, j, STRESS) + ((l11 * dx + l13 * dz) - less * (b1 * yz + b2 * zz)), STRESS)
-        put(szz, j, at(szz, j, STRESS) + ((l13 * dx + l33 * dz) - less * (b1 * yx + b2 * zx)), STRESS)
+        add(sxx, j, (l11 * dx + l13 * dz) - less * (b1 * yz + b2 * zz), STRESS)
+        add(szz, j, (l13 * dx + l33 * dz) - less * (b1 * yx + b2 * zx), STRESS)
 
 
 @kernel
@@ -81,7 +81,7 @@ def fast_lossy_shear(a, b, pitch, c, p, f, mu, memory):
         e = to_half(vz, j, ONE, along1, along2, along3, VELOCITY) + to_half(vx, j, pitch, down1, down2, down3, VELOCITY)
         y_sum, z_sum = recall(x_xz, j, e, decay, y, z)
         left = e - (at(h1, j, GROUND) * y_sum + at(h2, j, GROUND) * z_sum)
-        put(sxz, j, at(sxz, j, STRESS) + at(mu, j, GROUND) * left, STRESS)
+        add(sxz, j, at(mu, j, GROUND) * left, STRESS)
 
 
 @kernel
@@ -122,5 +122,5 @@ def take_difference(k, a, b, ground, f, scratch):
         j = base + i
         across = at(m.c13, j, GROUND)
         less = (at(m.c11, j, GROUND) - across) + (at(m.c33, j, GROUND) - across)
-        put(f.sxx, j, at(f.sxx, j, STRESS) - less * at(wz, i, WORK), STRESS)
-        put(f.szz, j, at(f.szz, j, STRESS) - less * at(wx, i, WORK), STRESS)
+        add(f.sxx, j, -less * at(wz, i, WORK), STRESS)
+        add(f.szz, j, -less * at(wx, i, WORK), STRESS)

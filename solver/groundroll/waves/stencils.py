@@ -10,6 +10,12 @@ ONE, TWO, THREE, FOUR = U(1), U(2), U(3), U(4)
 
 
 @inline
+def add(f, i, amount, family):
+    """f[i] += amount."""
+    put(f, i, at(f, i, family) + amount, family)
+
+
+@inline
 def to_half(f, i, s, c1, c2, c3, family):
     """c1 (f1 - f0) + c2 (f2 - f-1) + c3 (f3 - f-2), stride s: from nodes to the half point after i."""
     near = at(f, i + s, family) - at(f, i, family)
